@@ -1,0 +1,154 @@
+//! Checking the dimensions of an equation, part by part, on the tree that was read.
+
+use std::ops::Range;
+
+use thiserror::Error;
+
+use super::lower::{exact_value, table_call};
+use super::{Tree, TreeKind};
+use crate::units::Dimension;
+
+/// Where the dimensions of names come from.
+pub trait Dimensions {
+    /// The dimension of a name; `None` if nothing defines it.
+    fn of_name(&self, name: &str) -> Option<Dimension>;
+}
+
+/// A part of an equation whose dimensions do not fit.
+#[derive(Clone, Debug, PartialEq, Error)]
+#[error("{message}")]
+pub struct MismatchError {
+    /// What does not fit, with the dimensions.
+    pub message: String,
+    /// The part, and the part that it does not fit with, each with its dimension in words.
+    pub places: Vec<(Range<usize>, String)>,
+}
+
+/// A dimension, or that of the number 0, which fits anything.
+type Found = Option<Dimension>;
+
+/// The dimension of a tree.
+///
+/// # Errors
+///
+/// [`MismatchError`]: terms of a sum, sides of a comparison or branches of a choice that differ; an
+/// exponent, or an argument of a function, that is not a pure number. Unknown names count as pure
+/// numbers here: they are reported where the names are looked up.
+pub(in crate::model) fn check(tree: &Tree, names: &dyn Dimensions) -> Result<Found, MismatchError> {
+    match &tree.kind {
+        TreeKind::Number(text) => {
+            Ok(if text.parse() == Ok(0.0) { None } else { Some(Dimension::NONE) })
+        }
+        TreeKind::Name(name) => {
+            Ok(Some(names.of_name(name).unwrap_or(Dimension::NONE).in_equations()))
+        }
+        TreeKind::Sum(terms) => {
+            let parts: Vec<&Tree> = terms.iter().map(|(_, term)| term).collect();
+            same(&parts, names, "a sum adds quantities of one dimension")
+        }
+        TreeKind::Product(factors) => {
+            let mut result = Dimension::NONE;
+            for (divides, factor) in factors {
+                let dimension = check(factor, names)?.unwrap_or(Dimension::NONE);
+                let next = if *divides { result.per(dimension) } else { result.times(dimension) };
+                result = next.ok_or_else(|| overflow(tree))?;
+            }
+            Ok(Some(result))
+        }
+        TreeKind::Power(parts) => power(tree, parts, names),
+        TreeKind::Call(name, arguments) => call(tree, name, arguments, names),
+        TreeKind::Choose { parts, .. } => {
+            let [left, right, then, otherwise] = &**parts;
+            same(&[left, right], names, "a comparison needs quantities of one dimension")?;
+            same(&[then, otherwise], names, "both branches need one dimension")
+        }
+    }
+}
+
+fn power(tree: &Tree, parts: &[Tree; 2], names: &dyn Dimensions) -> Result<Found, MismatchError> {
+    let [base, exponent] = parts;
+    let dimension = check(base, names)?.unwrap_or(Dimension::NONE);
+    pure(exponent, names, "an exponent is a pure number")?;
+    if dimension.is_none() {
+        return Ok(Some(dimension));
+    }
+    match exact_value(exponent) {
+        Some(exact) => Ok(Some(dimension.power(exact).ok_or_else(|| overflow(tree))?)),
+        None => Err(MismatchError {
+            message: "a quantity with a dimension needs an exponent that is a plain number".into(),
+            places: vec![
+                (base.span.clone(), dimension.described()),
+                (exponent.span.clone(), "not a plain number".into()),
+            ],
+        }),
+    }
+}
+
+fn call(
+    tree: &Tree,
+    name: &str,
+    arguments: &[Tree],
+    names: &dyn Dimensions,
+) -> Result<Found, MismatchError> {
+    let parts: Vec<&Tree> = arguments.iter().collect();
+    match name {
+        "sqrt" => {
+            let dimension = check(&arguments[0], names)?.unwrap_or(Dimension::NONE);
+            let root = dimension.power(crate::units::Rational::HALF);
+            Ok(Some(root.ok_or_else(|| overflow(tree))?))
+        }
+        "abs" => check(&arguments[0], names),
+        "min" | "max" => same(&parts, names, "min and max compare quantities of one dimension"),
+        _ => {
+            // A table's dimension is that of its name; functions give pure numbers.
+            let table = table_call(name).map_or(name, |(table, _)| table);
+            for argument in parts {
+                pure(argument, names, "a function or table takes a pure number or an angle")?;
+            }
+            Ok(Some(names.of_name(table).unwrap_or(Dimension::NONE)))
+        }
+    }
+}
+
+fn pure(tree: &Tree, names: &dyn Dimensions, rule: &str) -> Result<(), MismatchError> {
+    match check(tree, names)? {
+        Some(dimension) if !dimension.is_none() => Err(MismatchError {
+            message: format!("{rule}, not {}", dimension.described()),
+            places: vec![(tree.span.clone(), dimension.described())],
+        }),
+        _ => Ok(()),
+    }
+}
+
+/// All parts have one dimension: that.
+fn same(parts: &[&Tree], names: &dyn Dimensions, rule: &str) -> Result<Found, MismatchError> {
+    let mut first: Option<(&Tree, Dimension)> = None;
+    for part in parts {
+        let Some(dimension) = check(part, names)? else { continue };
+        match first {
+            None => first = Some((part, dimension)),
+            Some((_, expected)) if expected == dimension => {}
+            Some((other, expected)) => {
+                return Err(MismatchError {
+                    message: format!(
+                        "{rule}: here {} meets {}",
+                        expected.described(),
+                        dimension.described()
+                    ),
+                    places: vec![
+                        (part.span.clone(), dimension.described()),
+                        (other.span.clone(), expected.described()),
+                    ],
+                });
+            }
+        }
+    }
+    Ok(first.map(|(_, dimension)| dimension))
+}
+
+fn overflow(tree: &Tree) -> MismatchError {
+    MismatchError {
+        message: "the exponents of the dimension are beyond all bounds".into(),
+        places: vec![(tree.span.clone(), String::new())],
+    }
+}

@@ -1,0 +1,25 @@
+//! Equations as data, and the catalogue of structures that are made of them.
+//!
+//! Knows no probability and no file. An equation enters as text, in the same notation for the
+//! catalogue and for a user's own ([`Blueprint`]); it becomes one expression graph ([`Model`]) that
+//! is evaluated, differentiated, printed and compiled ([`Program`]).
+
+mod allocate;
+mod compile;
+pub mod expression;
+mod limits;
+mod program;
+mod solve;
+pub mod source;
+pub mod structures;
+
+mod system;
+mod tape;
+
+pub use limits::{Bound, Limit};
+pub use program::{Outcome, Program, Workspace};
+pub use source::{Citation, Confidence};
+pub use system::{
+    Blueprint, Definition, Fault, FaultProblem, Input, Model, Part, Unknown, UnknownText,
+};
+pub use tape::BLOCK;

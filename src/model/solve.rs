@@ -1,0 +1,131 @@
+//! One equation with one unknown: the smallest root above the lower bound.
+
+/// How many cells the range is searched in for the first change of sign.
+const CELLS: u32 = 128;
+/// More steps than bisection alone needs to exhaust the digits of a double.
+const STEPS: u32 = 200;
+
+/// The smallest root of `residual` between two bounds, or `None` where there is none.
+///
+/// `residual` gives the value and its slope. The range is searched cell by cell for the first change of
+/// sign, and a cell whose slopes point to a double dip towards zero is looked into, so that a pair of
+/// close roots near the last possible solution is not stepped over. Inside the cell Newton's method
+/// runs, held to a bracket that shrinks at every step, so that it cannot leave or cycle.
+pub(super) fn smallest_root(
+    residual: &mut dyn FnMut(f64) -> (f64, f64),
+    lower: f64,
+    upper: f64,
+) -> Option<f64> {
+    if !(lower.is_finite() && upper.is_finite() && lower <= upper) {
+        return None;
+    }
+    let (mut left, (mut value, mut slope)) = (lower, residual(lower));
+    if value == 0.0 {
+        return Some(lower);
+    }
+    for cell in 1..=CELLS {
+        let share = f64::from(cell) / f64::from(CELLS);
+        let right = if cell == CELLS { upper } else { lower + (upper - lower) * share };
+        let (next, next_slope) = residual(right);
+        if value * next <= 0.0 {
+            return bracketed_newton(residual, left, right, value);
+        }
+        // The value first runs towards zero and then away from it: there may be two roots inside.
+        if value * slope < 0.0
+            && next * next_slope > 0.0
+            && let Some(dip) = turning_point(residual, left, right, value)
+        {
+            return bracketed_newton(residual, left, dip, value);
+        }
+        (left, value, slope) = (right, next, next_slope);
+    }
+    None
+}
+
+/// The point between where the residual turns, if it has crossed zero there.
+fn turning_point(
+    residual: &mut dyn FnMut(f64) -> (f64, f64),
+    mut left: f64,
+    mut right: f64,
+    sign: f64,
+) -> Option<f64> {
+    for _ in 0..STEPS {
+        let middle = left + (right - left) / 2.0;
+        let (value, slope) = residual(middle);
+        if value * sign <= 0.0 {
+            return Some(middle);
+        }
+        if middle <= left || middle >= right {
+            return None;
+        }
+        if slope * sign < 0.0 {
+            left = middle;
+        } else {
+            right = middle;
+        }
+    }
+    None
+}
+
+/// Newton's method inside a bracket whose ends have different signs; `at_left` is the value at the left.
+fn bracketed_newton(
+    residual: &mut dyn FnMut(f64) -> (f64, f64),
+    mut left: f64,
+    mut right: f64,
+    at_left: f64,
+) -> Option<f64> {
+    let mut x = left + (right - left) / 2.0;
+    for _ in 0..STEPS {
+        let (value, slope) = residual(x);
+        if !value.is_finite() {
+            return None;
+        }
+        if value == 0.0 {
+            return Some(x);
+        }
+        if value * at_left > 0.0 {
+            left = x;
+        } else {
+            right = x;
+        }
+        let newton = x - value / slope;
+        let next =
+            if newton > left && newton < right { newton } else { left + (right - left) / 2.0 };
+        if (next - x).abs() <= f64::EPSILON * x.abs() || next <= left || next >= right {
+            return Some(next.clamp(left, right));
+        }
+        x = next;
+    }
+    Some(x)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn the_smallest_root_is_found_to_the_last_digits() {
+        // (x - 1)(x - 1.5)(x - 3)
+        let mut cubic = |x: f64| {
+            let value = (x - 1.0) * (x - 1.5) * (x - 3.0);
+            let slope = (x - 1.5) * (x - 3.0) + (x - 1.0) * (x - 3.0) + (x - 1.0) * (x - 1.5);
+            (value, slope)
+        };
+        let root = smallest_root(&mut cubic, 0.0, 10.0).unwrap();
+        assert!((root - 1.0).abs() < 4e-16);
+    }
+
+    #[test]
+    fn two_roots_inside_one_cell_are_not_stepped_over() {
+        let mut close = |x: f64| ((x - 0.5001) * (x - 0.5002), 2.0 * x - 1.0003);
+        let root = smallest_root(&mut close, 0.0, 1.0).unwrap();
+        assert!((root - 0.5001).abs() < 1e-12, "{root}");
+    }
+
+    #[test]
+    fn where_there_is_no_root_none_is_given() {
+        assert_eq!(smallest_root(&mut |x| (x * x + 1.0, 2.0 * x), -3.0, 3.0), None);
+        assert_eq!(smallest_root(&mut |_| (f64::NAN, f64::NAN), 0.0, 1.0), None);
+        assert_eq!(smallest_root(&mut |x| (x, 1.0), 1.0, f64::INFINITY), None);
+    }
+}

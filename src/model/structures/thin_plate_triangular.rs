@@ -1,0 +1,221 @@
+//! Triangular thin-plate notch, Kindsvater-Shen equation, 20 to 100 degrees.
+
+use super::{
+    CoefficientRule, HEAD_ADJUSTMENT, InputSpec, PUBLISHED_HEAD_ADJUSTMENT, PublishedTable, Regime,
+    Statement, Structure, Values,
+};
+use crate::model::source::{ISO_1438, NBS_421, USBR_MANUAL};
+use crate::model::structures::Constant;
+use crate::model::{Confidence, Limit};
+use crate::units::Dimension;
+
+/// Angles at which the curves are read, degrees.
+const ANGLES: &[f64] = &[20.0, 30.0, 40.0, 50.0, 60.0, 70.0, 80.0, 90.0, 100.0];
+const DEGREE: f64 = std::f64::consts::PI / 180.0;
+/// A notch this near to a right angle counts as one for partial contraction.
+const RIGHT_ANGLE_TOLERANCE: f64 = 1.0;
+
+pub(super) static STRUCTURE: Structure = Structure {
+    kind: "thin-plate-triangular",
+    title: "Triangular thin-plate notch (Kindsvater-Shen)",
+    standard: ISO_1438,
+    inputs: &[
+        InputSpec {
+            key: "notch_angle",
+            symbol: "theta",
+            dimension: Dimension::ANGLE,
+            meaning: "full angle of the notch",
+            default: None,
+            domain: [19.0 * DEGREE, 101.0 * DEGREE],
+            domain_reason: "a coefficient is published for notches of 20 to 100 degrees only",
+            example: "90 deg",
+        },
+        InputSpec::length("crest_height", "p", "height of the vertex above the bed", "0.45 m"),
+        InputSpec::length("approach_width", "B", "width of the approach channel", "1.20 m"),
+        HEAD_ADJUSTMENT,
+    ],
+    constants: &[Constant {
+        symbol: "k_h_right",
+        value: 0.00085,
+        dimension: Dimension::LENGTH,
+        meaning: "head adjustment k_h of a partially contracted right-angled notch",
+        source: NBS_421,
+        confidence: Confidence::MemoryConfirmed,
+    }],
+    tables: &[
+        PublishedTable {
+            name: "C_chart",
+            meaning: "coefficient, fully contracted",
+            first: ("notch angle", "deg", ANGLES),
+            second: None,
+            unit: "1",
+            values: &[0.592, 0.586, 0.581, 0.579, 0.577, 0.5765, 0.577, 0.5785, 0.581],
+            source: ISO_1438,
+            confidence: Confidence::MemoryConfirmed,
+        },
+        PublishedTable {
+            name: "k_chart",
+            meaning: "head adjustment, read from the chart and rounded to 0.05 mm",
+            first: ("notch angle", "deg", ANGLES),
+            second: None,
+            unit: "mm",
+            values: &[2.80, 2.10, 1.65, 1.35, 1.15, 1.00, 0.90, 0.85, 0.85],
+            source: NBS_421,
+            confidence: Confidence::Seen,
+        },
+        PublishedTable {
+            name: "C_partial",
+            meaning: "coefficient of a right-angled notch, partially contracted; beyond the end of a \
+                      published curve its last value is held",
+            first: ("p/B", "1", &[0.1, 0.2, 0.3, 0.4, 0.6, 0.8, 1.0]),
+            second: Some((
+                "h/p",
+                "1",
+                &[0.1, 0.2, 0.3, 0.35, 0.4, 0.5, 0.6, 0.7, 0.8, 0.9, 1.0, 1.1],
+            )),
+            unit: "1",
+            values: PARTIAL,
+            source: NBS_421,
+            confidence: Confidence::Seen,
+        },
+        PublishedTable {
+            name: "C_end",
+            meaning: "h/p at which the published curve for this p/B ends",
+            first: ("p/B", "1", &[0.1, 0.2, 0.3, 0.4, 0.6, 0.8, 1.0]),
+            second: None,
+            unit: "1",
+            values: &[1.18, 1.18, 1.16, 1.00, 0.66, 0.50, 0.39],
+            source: NBS_421,
+            confidence: Confidence::Seen,
+        },
+    ],
+    regimes: &[
+        Regime {
+            name: "fully contracted",
+            when: "h/p <= 0.4, h/B <= 0.2, p >= 0.45 m, B >= 0.90 m and h <= 0.38 m; and for every \
+                   other notch that is not within 1 degree of 90",
+            definitions: &[
+                ("C_e", "C_chart(theta)"),
+                ("k_h", "k_chart(theta) + dk_h"),
+                ("h_e", "h + k_h"),
+                ("Q", "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5"),
+            ],
+            unknown: None,
+            flowing: "h + k_chart(theta) + dk_h",
+            beyond: None,
+            limits: &[
+                Limit::at_least("h", 0.06, "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h", 0.38, "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/p", 0.4, "head over vertex height")
+                    .by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/B", 0.2, "head over approach width")
+                    .by(ISO_1438, Confidence::Memory),
+                Limit::at_least("p", 0.45, "vertex height").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("B", 0.90, "approach width").by(ISO_1438, Confidence::Memory),
+            ],
+            coefficient: COEFFICIENT,
+        },
+        Regime {
+            name: "partially contracted",
+            when: "a notch within 1 degree of 90 that is not fully contracted",
+            definitions: &[
+                ("C_e", "C_partial(p/B, min(h/p, C_end(p/B)))"),
+                ("k_h", "k_h_right + dk_h"),
+                ("h_e", "h + k_h"),
+                ("Q", "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5"),
+            ],
+            unknown: None,
+            flowing: "h + k_h_right + dk_h",
+            beyond: Some("h/p - C_end(p/B)"),
+            limits: &[
+                Limit::at_least("h", 0.05, "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h", 0.60, "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/p", 1.2, "head over vertex height")
+                    .by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/B", 0.4, "head over approach width")
+                    .by(ISO_1438, Confidence::Memory),
+                Limit::at_least("p", 0.10, "vertex height").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("B", 0.60, "approach width").by(ISO_1438, Confidence::Memory),
+                Limit::at_most(
+                    "h/p/C_end(p/B)",
+                    1.0,
+                    "h/p over the end of the published curve for this p/B",
+                )
+                .by(NBS_421, Confidence::Seen),
+            ],
+            coefficient: COEFFICIENT,
+        },
+    ],
+    regime_for,
+    adjustments: &[PUBLISHED_HEAD_ADJUSTMENT],
+    velocity_of_approach: "inside the coefficient: the gauged head is used",
+    modular: Statement {
+        text: "tailwater at least 0.2 ft (0.061 m) below the vertex",
+        source: USBR_MANUAL,
+        confidence: Confidence::Seen,
+    },
+    head_measured: Statement {
+        text: "4 to 5 times the largest head upstream of the plate",
+        source: ISO_1438,
+        confidence: Confidence::Memory,
+    },
+};
+
+/// Contraction is a matter of the installation and of the head that the gauge shows: it is decided once,
+/// and no trial changes it.
+fn regime_for(values: &Values<'_>) -> usize {
+    let [h, p, width] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
+    let full = h / p <= 0.4 && h / width <= 0.2 && p >= 0.45 && width >= 0.90 && h <= 0.38;
+    let degrees = values.value("notch_angle") / DEGREE;
+    let right = (degrees - 90.0).abs() <= RIGHT_ANGLE_TOLERANCE + 1e-9;
+    usize::from(!full && right)
+}
+
+const COEFFICIENT: CoefficientRule = CoefficientRule {
+    words: "1.0 % at 95 % within the limits",
+    percent: "1",
+    source: ISO_1438,
+    confidence: Confidence::Memory,
+};
+
+/// Row by row of p/B; beyond the end of a curve its last printed value stands.
+#[rustfmt::skip] // a row of the published chart a line
+const PARTIAL: &[f64] = &[
+    0.578, 0.5785, 0.579,  0.579,  0.579,  0.579,  0.5785, 0.578,  0.5775, 0.5775, 0.577,  0.5765,
+    0.578, 0.5785, 0.579,  0.579,  0.579,  0.579,  0.5785, 0.5785, 0.5785, 0.5795, 0.5805, 0.5815,
+    0.578, 0.5785, 0.579,  0.579,  0.579,  0.579,  0.5795, 0.5805, 0.5825, 0.585,  0.5875, 0.5905,
+    0.578, 0.5785, 0.579,  0.579,  0.579,  0.579,  0.581,  0.5845, 0.5885, 0.5935, 0.599,  0.599,
+    0.578, 0.5785, 0.579,  0.5795, 0.5805, 0.584,  0.5895, 0.5895, 0.5895, 0.5895, 0.5895, 0.5895,
+    0.578, 0.5785, 0.5795, 0.5815, 0.5845, 0.5925, 0.5925, 0.5925, 0.5925, 0.5925, 0.5925, 0.5925,
+    0.578, 0.5785, 0.5815, 0.585,  0.5905, 0.5905, 0.5905, 0.5905, 0.5905, 0.5905, 0.5905, 0.5905,
+];
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::model::Model;
+
+    #[test]
+    fn the_derivative_by_head_reads_as_a_person_would_write_it() {
+        let mut model = Model::build(&STRUCTURE.blueprint(0)).unwrap();
+        let derivative = model.derivative(model.result(), 0);
+        assert_eq!(model.text(derivative), "4/3*F_C*C_e*sqrt(2*g)*tan(theta/2)*h_e^1.5");
+    }
+
+    #[test]
+    fn contraction_follows_the_installation() {
+        let regime = |h: f64, p: f64, width: f64, degrees: f64| {
+            regime_for(&Values(&[
+                ("head", Some(h)),
+                ("crest_height", Some(p)),
+                ("approach_width", Some(width)),
+                ("notch_angle", Some(degrees * DEGREE)),
+            ]))
+        };
+        assert_eq!(regime(0.18, 0.45, 1.2, 89.7), 0);
+        assert_eq!(regime(0.19, 0.45, 1.2, 89.7), 1);
+        assert_eq!(regime(0.10, 0.41, 1.2, 90.0), 1);
+        assert_eq!(regime(0.10, 0.45, 0.8, 91.0), 1);
+        assert_eq!(regime(0.10, 0.30, 0.8, 60.0), 0);
+    }
+}

@@ -1,0 +1,93 @@
+//! The sheet of a structure, and the list of all, as pages.
+
+use super::document::Document;
+use crate::study::{NumberLine, RegimeSheet, Sheet, TableSheet};
+use crate::units::significant;
+
+/// Lays out the sheet of a structure.
+pub fn sheet_document(sheet: &Sheet) -> Document {
+    let mut page = Document::default();
+    page.title(format!("{}: {}", sheet.kind, sheet.title));
+    page.paragraph(sheet.standard.clone());
+    page.heading("Inputs");
+    page.table(
+        &["key", "symbol", "SI unit", "meaning"],
+        sheet.inputs.iter().map(|cells| cells.to_vec()).collect(),
+    );
+    page.paragraph(format!("Velocity of approach: {}.", sheet.velocity_of_approach));
+    for regime in &sheet.regimes {
+        regime_part(&mut page, regime, sheet.regimes.len() > 1);
+    }
+    page.heading("Published numbers");
+    page.table(NUMBER_COLUMNS, sheet.numbers.iter().map(number_row).collect());
+    for table in &sheet.tables {
+        table_part(&mut page, table);
+    }
+    page
+}
+
+const NUMBER_COLUMNS: &[&str] = &["what", "value", "source", "confidence"];
+
+fn number_row(line: &NumberLine) -> Vec<String> {
+    vec![line.what.clone(), line.value.clone(), line.source.clone(), line.confidence.clone()]
+}
+
+fn regime_part(page: &mut Document, regime: &RegimeSheet, several: bool) {
+    if several {
+        page.heading(format!("Equation, {}", regime.name));
+        page.paragraph(format!("When {}.", regime.when));
+    } else {
+        page.heading("Equation");
+    }
+    page.lines(regime.equations.iter().map(|line| format!("{} = {}", line.name, line.text)));
+    page.heading("Derivatives");
+    page.lines(regime.derivatives.iter().map(|line| format!("{} = {}", line.name, line.text)));
+    if regime.derivatives.iter().any(|line| line.name.starts_with("∂F")) {
+        page.paragraph(
+            "Together: dQ/dx = ∂Q/∂x + ∂Q/∂H * dH/dx, by the implicit-function theorem.",
+        );
+    }
+    page.heading("Limits of use and uncertainty of the coefficient");
+    let rows = regime.limits.iter().chain([&regime.coefficient]).map(number_row).collect();
+    page.table(NUMBER_COLUMNS, rows);
+}
+
+fn table_part(page: &mut Document, table: &TableSheet) {
+    page.paragraph(format!(
+        "Table {}. Values in {}; {}, {}.",
+        table.what, table.unit, table.source, table.confidence
+    ));
+    let mut columns = vec![table.arguments.join(" \\ ")];
+    if table.columns.is_empty() {
+        columns.push("#value".to_owned());
+    } else {
+        columns.extend(table.columns.iter().map(|node| format!("#{}", significant(*node, 4))));
+    }
+    let columns: Vec<&str> = columns.iter().map(String::as_str).collect();
+    let rows = table
+        .rows
+        .iter()
+        .map(|(node, values)| {
+            std::iter::once(node).chain(values).map(|value| significant(*value, 5)).collect()
+        })
+        .collect();
+    page.table(&columns, rows);
+}
+
+/// Lays out the list of structures.
+pub fn catalogue_document(sheets: &[Sheet]) -> Document {
+    let mut page = Document::default();
+    page.title("Structures");
+    let mut rows: Vec<Vec<String>> = sheets
+        .iter()
+        .map(|sheet| vec![sheet.kind.clone(), sheet.title.clone(), sheet.standard.clone()])
+        .collect();
+    rows.push(vec![
+        "equation".to_owned(),
+        "An equation of your own, of any dimension".to_owned(),
+        "docs/station-file.md has its keys".to_owned(),
+    ]);
+    page.table(&["kind", "what it is", "standard"], rows);
+    page.paragraph("`nappe structures KIND` shows one in full, `nappe new KIND` starts a file.");
+    page
+}

@@ -1,0 +1,306 @@
+//! `kind = "equation"`: an equation of the user's own, of any dimension.
+
+use super::section::{Findings, Section, string};
+use super::structure::{
+    Evidence, Kind, StationInput, StructureSection, gravity_of, read_input, read_value,
+};
+use crate::diagnostic::{Code, Diagnostic, Span};
+use crate::model::expression::LowerError;
+use crate::model::structures::{COEFFICIENT_FACTOR, HEAD};
+use crate::model::{Blueprint, Fault, FaultProblem, Input, Model, Part, UnknownText};
+use crate::units::{Dimension, Unit};
+
+/// The word in `kind`.
+pub(super) const KIND: &str = "equation";
+
+/// An equation of the user's own, checked.
+#[derive(Clone, Debug)]
+pub struct Equation {
+    /// The equations.
+    pub blueprint: Blueprint,
+    /// The unit that the result is to be shown in.
+    pub unit: Unit,
+    /// It reads the head.
+    pub reads_head: bool,
+}
+
+/// Where the texts of the equations stand in the file.
+#[derive(Default)]
+struct Places {
+    definitions: Vec<(String, Span, String)>,
+    unknown: Vec<(Part, Span, String)>,
+    result: Span,
+}
+
+pub(super) fn read(
+    mut section: Section<'_, '_>,
+    findings: &mut Findings<'_>,
+) -> Option<StructureSection> {
+    let before = findings.list.len();
+    let mut places = Places::default();
+    let mut inputs = read_inputs(&mut section, findings);
+    let reads_head = inputs.iter().any(|input| input.key == HEAD.key);
+    let gravity = gravity_of(&mut section, findings);
+    let factor = read_input(&mut section, &COEFFICIENT_FACTOR, findings);
+    let definitions = read_definitions(&mut section, &mut places, findings);
+    let unknown = read_unknown(&mut section, &mut places, findings);
+    let result = section.text("result", findings);
+    if result.is_none() && section.get("result").is_none() {
+        let title = "[structure] of kind `equation` needs `result`";
+        findings
+            .push(Diagnostic::error(Code::MissingKey, section.span.clone(), title).help(
+                "name the definition that is the answer, for example result = \"discharge\"",
+            ));
+    }
+    let unit = read_unit(&mut section, findings);
+    section.finish(findings);
+    let (result, result_span) = result?;
+    places.result = result_span;
+
+    // Names that the user has given a meaning of their own keep it.
+    for common in [Some(gravity), factor.filter(|_| reads_head)].into_iter().flatten() {
+        let taken = inputs.iter().any(|input| input.symbol == common.symbol)
+            || definitions.iter().any(|(known, _)| *known == common.symbol);
+        if !taken {
+            inputs.push(common);
+        }
+    }
+    let blueprint = Blueprint {
+        inputs: inputs
+            .iter()
+            .map(|input| Input {
+                key: input.key.clone(),
+                symbol: input.symbol.clone(),
+                dimension: input.dimension,
+            })
+            .collect(),
+        definitions,
+        unknown,
+        result: result.clone(),
+        ..Blueprint::default()
+    };
+    if findings.list.len() > before {
+        return None;
+    }
+    let model = match Model::build(&blueprint) {
+        Ok(model) => model,
+        Err(faults) => {
+            faults.iter().for_each(|fault| report(fault, &places, findings));
+            return None;
+        }
+    };
+    let unit = unit?;
+    if unit.dimension().in_equations() != model.result_dimension() {
+        let title = format!(
+            "`unit` is {}, but the result `{result}` is {}",
+            unit.dimension().described(),
+            model.result_dimension().described()
+        );
+        findings.error(Code::DimensionMismatch, places.result, title);
+        return None;
+    }
+    let blueprint = with_factor(blueprint);
+    let equation = Equation { blueprint, unit, reads_head };
+    Some(StructureSection { kind: Kind::Own(Box::new(equation)), inputs, unused: Vec::new() })
+}
+
+/// The factor on the coefficient multiplies the result wherever it is used.
+fn with_factor(mut blueprint: Blueprint) -> Blueprint {
+    let symbol = COEFFICIENT_FACTOR.symbol;
+    if blueprint.inputs.iter().any(|input| input.key == COEFFICIENT_FACTOR.key) {
+        for (name, text) in &mut blueprint.definitions {
+            if *name == blueprint.result {
+                *text = format!("{symbol}*({text})");
+            }
+        }
+    }
+    blueprint
+}
+
+fn read_inputs(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Vec<StationInput> {
+    let help = "list every quantity of the equation, for example [structure.inputs] h = \"head\"";
+    let Some(value) = section.need("inputs", help, findings) else { return Vec::new() };
+    let Some(mut table) = Section::of("[structure.inputs]", value, findings) else {
+        return Vec::new();
+    };
+    let mut inputs = Vec::new();
+    for (name, span, value) in table.entries() {
+        if !is_name(&name) {
+            not_a_name(&name, span, findings);
+            continue;
+        }
+        let is_head = value.get_ref().as_str() == Some(HEAD.key);
+        if is_head {
+            inputs.push(StationInput {
+                key: HEAD.key.to_owned(),
+                symbol: name,
+                dimension: Dimension::LENGTH,
+                value: None,
+                text: String::new(),
+                unit: Unit::si(Dimension::LENGTH),
+                span: Some(value.span()),
+                observations: Vec::new(),
+                evidence: Evidence::default(),
+            });
+        } else {
+            inputs.extend(read_value(&name, value, None, findings));
+        }
+    }
+    if inputs.iter().filter(|input| input.key == HEAD.key).count() > 1 {
+        let title = "two inputs are the head: one is due";
+        findings.error(Code::DuplicateName, table.span.clone(), title);
+    }
+    inputs
+}
+
+fn read_definitions(
+    section: &mut Section<'_, '_>,
+    places: &mut Places,
+    findings: &mut Findings<'_>,
+) -> Vec<(String, String)> {
+    let help = "for example [structure.definitions] discharge = \"c * b * h^1.5\"";
+    let Some(value) = section.need("definitions", help, findings) else { return Vec::new() };
+    let Some(mut table) = Section::of("[structure.definitions]", value, findings) else {
+        return Vec::new();
+    };
+    let mut definitions = Vec::new();
+    for (name, span, value) in table.entries() {
+        if !is_name(&name) {
+            not_a_name(&name, span, findings);
+        } else if let Some(text) = string(&name, value, findings) {
+            places.definitions.push((name.clone(), value.span(), text.clone()));
+            definitions.push((name, text));
+        }
+    }
+    definitions
+}
+
+fn read_unknown(
+    section: &mut Section<'_, '_>,
+    places: &mut Places,
+    findings: &mut Findings<'_>,
+) -> Option<UnknownText> {
+    let value = section.get("unknown")?;
+    let mut table = Section::of("[structure.unknown]", value, findings)?;
+    let mut read = |key: &str, part: Part, help: &str| {
+        let value = table.need(key, help, findings)?;
+        let text = string(key, value, findings)?;
+        places.unknown.push((part, value.span(), text.clone()));
+        Some(text)
+    };
+    let name = read("name", Part::UnknownName, "the quantity that the equation gives");
+    let equation = read("equation", Part::Equation, "for example \"H = h + v^2/(2*g)\"");
+    let from = read("from", Part::From, "the smallest value it can have, for example \"h\"");
+    let to = read("to", Part::To, "the largest value it can have, for example \"2*h\"");
+    table.finish(findings);
+    let name = name?;
+    if !is_name(&name) {
+        not_a_name(&name, value.span(), findings);
+        return None;
+    }
+    Some(UnknownText { name, equation: equation?, from: from?, to: to? })
+}
+
+fn read_unit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Option<Unit> {
+    let value =
+        section.need("unit", "the unit of the result, for example unit = \"m3/s\"", findings)?;
+    let text = string("unit", value, findings)?;
+    match Unit::parse(&text) {
+        Ok(unit) => Some(unit),
+        Err(error) => {
+            findings.error(Code::UnknownUnit, value.span(), format!("`unit`: {error}"));
+            None
+        }
+    }
+}
+
+/// A name that equations can hold, and that is none of their words.
+fn is_name(name: &str) -> bool {
+    let words = ["when", "otherwise", "sqrt", "min", "max", "pi", "π"];
+    let functions = crate::model::expression::Function::ALL.map(|(name, _)| name);
+    let mut letters = name.chars();
+    letters.next().is_some_and(char::is_alphabetic)
+        && letters.all(|c| c.is_alphabetic() || c.is_ascii_digit() || c == '_')
+        && !words.contains(&name)
+        && !functions.contains(&name)
+        && name.len() <= 60
+}
+
+fn not_a_name(name: &str, span: Span, findings: &mut Findings<'_>) {
+    let shown: String = name.chars().take(60).collect();
+    findings.push(
+        Diagnostic::error(
+            Code::EquationSyntax,
+            span,
+            format!("`{shown}` cannot be a name in an equation"),
+        )
+        .help("names are letters, digits and _, start with a letter, and are no function's"),
+    );
+}
+
+/// Places a fault of the equations in the file.
+fn report(fault: &Fault, places: &Places, findings: &mut Findings<'_>) {
+    let (whole, text, what) = match &fault.part {
+        Part::Definition(name) => {
+            let place = places.definitions.iter().find(|(known, ..)| known == name);
+            place.map_or((places.result.clone(), "", name.clone()), |(_, span, text)| {
+                (span.clone(), text.as_str(), name.clone())
+            })
+        }
+        Part::Result | Part::Expression => (places.result.clone(), "", "result".to_owned()),
+        part => {
+            let place = places.unknown.iter().find(|(known, ..)| known == part);
+            let what = match part {
+                Part::Equation => "equation",
+                Part::From => "from",
+                Part::To => "to",
+                _ => "name",
+            };
+            place.map_or((places.result.clone(), "", what.to_owned()), |(_, span, text)| {
+                (span.clone(), text.as_str(), what.to_owned())
+            })
+        }
+    };
+    let place = |span: &Span| {
+        let inside = findings.inside(&whole, text, span);
+        // An empty place (the end of the text) is shown as the string's last character.
+        if inside.is_empty() { inside.start..inside.start + 1 } else { inside }
+    };
+    let title = format!("`{what}`: {fault}");
+    let diagnostic = match &fault.problem {
+        FaultProblem::Syntax(_) => {
+            Diagnostic::error(Code::EquationSyntax, place(&fault.span), title)
+        }
+        FaultProblem::Name(LowerError::UnknownName { nearest, .. }) => {
+            let diagnostic = Diagnostic::error(Code::UnknownName, place(&fault.span), title);
+            match nearest {
+                Some(nearest) => diagnostic
+                    .help(format!("the nearest known name is `{nearest}`"))
+                    .fix(place(&fault.span), nearest.clone()),
+                None => diagnostic.help("define it, or list it in [structure.inputs]"),
+            }
+        }
+        FaultProblem::Name(_) => Diagnostic::error(Code::EquationSyntax, place(&fault.span), title),
+        FaultProblem::Mismatch(error) => {
+            let mut diagnostic =
+                Diagnostic::error(Code::DimensionMismatch, place(&fault.span), title);
+            for (index, (span, text)) in error.places.iter().enumerate() {
+                if index == 0 {
+                    diagnostic = diagnostic.label(text.clone());
+                } else {
+                    diagnostic = diagnostic.context(place(span), text.clone());
+                }
+            }
+            diagnostic
+        }
+        FaultProblem::Duplicate(_) => Diagnostic::error(Code::DuplicateName, whole.clone(), title)
+            .help("an input, a definition and the unknown each need a name of their own"),
+        FaultProblem::Circular(_) => {
+            Diagnostic::error(Code::CircularDefinition, whole.clone(), title)
+                .help("a quantity that depends on itself is an unknown: [structure.unknown]")
+        }
+        FaultProblem::NoResult(_) => Diagnostic::error(Code::UnknownName, whole.clone(), title)
+            .help("the result is one of the definitions, or the unknown"),
+    };
+    findings.push(diagnostic);
+}

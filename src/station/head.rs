@@ -1,0 +1,75 @@
+//! `[head]`: the range of heads that the station works over, and its surveyed zero.
+
+use toml::de::DeValue;
+
+use super::quantity::{self, Stated};
+use super::section::{Findings, Section, article};
+use crate::diagnostic::{Code, Diagnostic};
+use crate::units::Dimension;
+
+/// What a file says of the head.
+#[derive(Clone, Debug, Default, PartialEq)]
+pub struct Head {
+    /// Lowest and highest indicated head.
+    pub range: Option<[Stated; 2]>,
+    /// The gauge's zero above the crest, as surveyed: a station whose zero lies below the crest reads
+    /// high.
+    pub zero_above_crest: Option<Stated>,
+}
+
+pub(super) fn read(mut section: Section<'_, '_>, findings: &mut Findings<'_>) -> Head {
+    let mut head = Head::default();
+    let length = Some(Dimension::LENGTH);
+    if let Some(value) = section.get("range") {
+        match value.get_ref() {
+            DeValue::Array(items) if items.len() == 2 => {
+                let ends: Vec<Stated> = items
+                    .iter()
+                    .filter_map(|item| quantity::read("range", item, length, findings))
+                    .collect();
+                if let Ok([low, high]) = <[Stated; 2]>::try_from(ends) {
+                    check_order(&low, &high, value.span(), findings);
+                    head.range = Some([low, high]);
+                }
+            }
+            other => findings.push(
+                Diagnostic::error(
+                    Code::WrongType,
+                    value.span(),
+                    format!("`range` is a list of two heads, not {}", article(other)),
+                )
+                .help("for example range = [\"0.06 m\", \"0.30 m\"]"),
+            ),
+        }
+    }
+    if let Some(value) = section.get("zero_above_crest") {
+        head.zero_above_crest = quantity::read("zero_above_crest", value, length, findings);
+    }
+    section.finish(findings);
+    head
+}
+
+fn check_order(
+    low: &Stated,
+    high: &Stated,
+    span: crate::diagnostic::Span,
+    findings: &mut Findings<'_>,
+) {
+    if low.value >= high.value {
+        findings.push(
+            Diagnostic::error(
+                Code::RangeReversed,
+                span.clone(),
+                format!("`range` runs from {} down to {}", low.text, high.text),
+            )
+            .help("the lower head comes first")
+            .fix(span, format!("[\"{}\", \"{}\"]", high.text, low.text)),
+        );
+    }
+    for end in [low, high] {
+        if !(-10.0..=100.0).contains(&end.value) {
+            let title = format!("`range`: {} is no head that a station can have", end.text);
+            findings.error(Code::OutsideDomain, end.span.clone(), title);
+        }
+    }
+}

@@ -1,0 +1,26 @@
+//! Station files: reading, checking, and turning a station into a problem to propagate.
+//!
+//! Readers never stop at the first fault: they give what they could read and a list of
+//! [`Diagnostic`](crate::diagnostic::Diagnostic)s. A file that has an error gives no station.
+
+mod correlation;
+mod equation;
+mod file;
+mod head;
+mod quantity;
+mod section;
+mod setting;
+mod size;
+mod source;
+mod structure;
+mod template;
+
+pub(crate) use file::too_large;
+pub use file::{MAX_BYTES, Station, read};
+pub use head::Head;
+pub use quantity::Stated;
+pub use setting::{Refusal, Setting, SourceRow};
+pub use size::{Amount, Size};
+pub use source::{ErrorSource, FixedUntil};
+pub use structure::{Evidence, Kind, StationInput};
+pub use template::{equation_template, template};

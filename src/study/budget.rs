@@ -1,0 +1,649 @@
+//! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
+
+use crate::diagnostic::{Code, Warning};
+use crate::model::structures::{PUBLISHED_COEFFICIENT, Regime, Structure};
+use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
+use crate::propagation::{Agreement, Coverage, DegreesOfFreedom, Linear, Share, linear, shares};
+use crate::station::{Evidence, Kind, Refusal, Setting, Station};
+use crate::units::{Unit, significant};
+
+use super::limits::{LimitState, limit_states, limit_warnings};
+
+/// What is asked.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub struct Question {
+    /// Where.
+    pub at: At,
+    /// What the expanded uncertainty is to cover.
+    pub coverage: Coverage,
+    /// How many trials; `None` leaves the Monte Carlo method out.
+    pub trials: Option<Amount>,
+    /// Seed of the random numbers.
+    pub seed: u64,
+    /// The month of the year, 1 to 12, for sources that are there in some months only.
+    pub month: Option<u32>,
+}
+
+/// At which head a budget is drawn up.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum At {
+    /// The middle of the range of heads; no head where the equation reads none.
+    Middle,
+    /// An indicated head, m.
+    Head(f64),
+    /// The indicated head at which the corrected result has this value, m3/s.
+    Flow(f64),
+}
+
+/// The answer.
+#[derive(Clone, Debug)]
+pub struct Budget {
+    /// The station's name.
+    pub station: String,
+    /// The kind of its structure.
+    pub kind: String,
+    /// The structure in words, and its standard.
+    pub title: String,
+    /// The standard behind the equation; empty for a user's own.
+    pub standard: String,
+    /// The form of the equation; empty for a user's own.
+    pub regime: String,
+    /// SHA-256 of the station file.
+    pub digest: String,
+    /// Indicated head, m.
+    pub head: Option<f64>,
+    /// Corrected head, m.
+    pub corrected_head: Option<f64>,
+    /// The month asked about.
+    pub month: Option<u32>,
+    /// The equations, name and right-hand side.
+    pub equations: Vec<(String, String)>,
+    /// The inputs.
+    pub inputs: Vec<InputRow>,
+    /// The result.
+    pub result: ResultPart,
+    /// What was to be covered.
+    pub coverage: Coverage,
+    /// The linear method.
+    pub linear: Linear,
+    /// Its coverage factor.
+    pub coverage_factor: f64,
+    /// Its expanded uncertainty.
+    pub expanded_uncertainty: f64,
+    /// The Monte Carlo method; `None` where it was left out.
+    pub monte_carlo: Option<MonteCarloPart>,
+    /// The sources, ranked.
+    pub rows: Vec<BudgetRow>,
+    /// Known biases that were taken out.
+    pub corrections: Vec<Correction>,
+    /// The limits of use.
+    pub limits: Vec<LimitState>,
+    /// Caveats.
+    pub warnings: Vec<Warning>,
+}
+
+/// The quantity that is asked for.
+#[derive(Clone, Debug, PartialEq)]
+pub struct ResultPart {
+    /// Its name: `discharge`, or what an own equation calls it.
+    pub name: String,
+    /// Its coherent SI unit.
+    pub unit: Unit,
+    /// The unit that an own equation states for it.
+    pub stated_unit: Option<Unit>,
+    /// Corrected, by the linear method.
+    pub value: f64,
+    /// As indicated.
+    pub indicated: f64,
+    /// Indicated minus corrected.
+    pub known_bias: f64,
+    /// Expanded uncertainty of the linear method in per cent of the value; `None` at 0.
+    pub relative_expanded_percent: Option<f64>,
+    /// Known bias in per cent of the value; `None` at 0.
+    pub relative_bias_percent: Option<f64>,
+}
+
+/// What the Monte Carlo method gives.
+#[derive(Clone, Debug, PartialEq)]
+pub struct MonteCarloPart {
+    /// Trials, tallies, statistics.
+    pub result: MonteCarlo,
+    /// The comparison with the linear method.
+    pub agreement: Agreement,
+    /// Base trials of the shares.
+    pub base_trials: u64,
+}
+
+/// An input, for retracing.
+#[derive(Clone, Debug, PartialEq)]
+pub struct InputRow {
+    /// Its key.
+    pub key: String,
+    /// Its symbol.
+    pub symbol: String,
+    /// As the file states it; empty for a default.
+    pub stated: String,
+    /// As indicated, in SI units; `None` for one that is left out.
+    pub indicated: Option<f64>,
+    /// With known biases taken out.
+    pub corrected: Option<f64>,
+    /// Its SI unit.
+    pub unit: String,
+    /// What stands behind it.
+    pub evidence: Evidence,
+}
+
+/// One source in a budget.
+#[derive(Clone, Debug, PartialEq)]
+pub struct BudgetRow {
+    /// Its rank, from 1.
+    pub rank: usize,
+    /// Its name.
+    pub name: String,
+    /// The keys of the inputs it acts on.
+    pub acts_on: Vec<String>,
+    /// Its size as stated.
+    pub size: String,
+    /// When a new draw is made.
+    pub fixed_until: String,
+    /// Standard uncertainty of its error.
+    pub standard_uncertainty: f64,
+    /// The SI unit of its error; `1` where it scales.
+    pub unit: String,
+    /// Degrees of freedom; infinite if taken as exactly known.
+    pub degrees_of_freedom: f64,
+    /// Derivative of the result by its error.
+    pub sensitivity: f64,
+    /// Absolute sensitivity times standard uncertainty, in the SI unit of the result.
+    pub contribution: f64,
+    /// Contribution in per cent of the result; `None` at 0.
+    pub contribution_percent: Option<f64>,
+    /// Standard uncertainty of the head that it makes, m; `None` if it does not act on the head.
+    pub head_uncertainty: Option<f64>,
+    /// Share by the linear method.
+    pub share_linear: f64,
+    /// Shares by the Monte Carlo method, of the source or of the correlated set it belongs to.
+    pub share: Option<Share>,
+    /// Other sources that it is correlated with.
+    pub correlated_with: Vec<String>,
+    /// What stands behind it.
+    pub evidence: Evidence,
+    /// Who published it, and how well that is known; for automatic sources.
+    pub published: Option<(String, String)>,
+    /// It is published for use within limits that are not kept.
+    pub outside_limits: bool,
+    /// The automatic source whose place it takes.
+    pub replaces: Option<String>,
+}
+
+/// A known bias that was taken out.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Correction {
+    /// Where it comes from.
+    pub name: String,
+    /// The keys of the inputs that it is a bias of.
+    pub acts_on: Vec<String>,
+    /// Indicated minus true, in SI units of the input; a fraction where it scales.
+    pub bias: f64,
+    /// The SI unit of the bias.
+    pub unit: String,
+    /// What leaving it in would do to the result, in per cent of it; to first order.
+    pub effect_percent: Option<f64>,
+}
+
+/// Draws up the budget of a station.
+///
+/// `progress` is told of Monte Carlo trials as they are done, from any thread.
+///
+/// # Errors
+///
+/// [`Refusal`] where the station has no head to work at, or no flow.
+pub fn budget(
+    station: &Station,
+    question: &Question,
+    progress: &(dyn Fn(u64) + Sync),
+) -> Result<Budget, Refusal> {
+    let head = find_head(station, question)?;
+    let mut setting = station.at(head, question.month)?;
+    let corrected = setting.problem.corrected();
+    let linear = linear(&mut setting.problem).swap_remove(0);
+    let finite = linear.value.is_finite() && linear.standard_uncertainty.is_finite();
+    station.check_outcome(linear.outcome, head, finite)?;
+    let (coverage_factor, expanded_uncertainty) = linear.expanded(question.coverage);
+    let mut warnings = station.warnings.clone();
+    warnings.append(&mut setting.warnings);
+    let limits = match setting.regime {
+        Some((_, regime)) => limit_states(&mut setting.problem.model, regime, &corrected),
+        None => Vec::new(),
+    };
+    warnings.extend(limit_warnings(&limits));
+    warnings.extend(table_warnings(&mut setting, &corrected));
+    warnings.extend(freedom_warning(&linear));
+    let monte_carlo = run_monte_carlo(
+        &mut setting,
+        question,
+        &linear,
+        expanded_uncertainty,
+        progress,
+        &mut warnings,
+    );
+    warnings.extend(memory_warning(&setting, &limits));
+    let (monte_carlo, shares) = match monte_carlo {
+        Some((part, shares)) => (Some(part), Some(shares)),
+        None => (None, None),
+    };
+    let kind = kind_words(station);
+    let rows = rows(&setting, &linear, shares.as_deref(), &limits, &corrected);
+    Ok(Budget {
+        station: station.name.clone(),
+        kind: kind.0,
+        title: kind.1,
+        standard: kind.2,
+        regime: setting.regime.map_or_else(String::new, |(_, regime)| regime.name.to_owned()),
+        digest: station.digest.clone(),
+        head,
+        corrected_head: head.and(setting.problem.model.input("head")).map(|input| corrected[input]),
+        month: question.month,
+        equations: equations(&setting),
+        inputs: input_rows(station, &setting, &corrected),
+        result: result_part(station, &setting, &linear, expanded_uncertainty),
+        coverage: question.coverage,
+        coverage_factor,
+        expanded_uncertainty,
+        monte_carlo,
+        rows,
+        corrections: corrections(&setting, &linear),
+        limits,
+        warnings,
+        linear,
+    })
+}
+
+/// The indicated head that is asked about.
+fn find_head(station: &Station, question: &Question) -> Result<Option<f64>, Refusal> {
+    match question.at {
+        At::Head(head) => Ok(Some(head)),
+        At::Flow(flow) => head_for_flow(station, flow, question.month).map(Some),
+        At::Middle => match &station.head {
+            None => Ok(None),
+            Some(head) => match &head.range {
+                Some([low, high]) => Ok(Some(f64::midpoint(low.value, high.value))),
+                None => Err(Refusal::NoHead),
+            },
+        },
+    }
+}
+
+/// Heads beyond this are none that a station has.
+const HIGHEST_HEAD: f64 = 20.0;
+
+/// The indicated head at which the corrected result is `flow`, by bisection: the result grows with the
+/// head, but may jump where the form of the equation changes.
+fn head_for_flow(station: &Station, flow: f64, month: Option<u32>) -> Result<f64, Refusal> {
+    if station.head.is_none() {
+        return Err(Refusal::HeadNotRead);
+    }
+    let flow_at = |head: f64| -> Result<f64, Refusal> {
+        let mut setting = station.at(Some(head), month)?;
+        let corrected = setting.problem.corrected();
+        let outputs = setting.problem.outputs.clone();
+        Ok(setting.problem.model.evaluate(&outputs, &corrected).0[0])
+    };
+    let range = station.head.as_ref().and_then(|head| head.range.as_ref());
+    let mut high = range.map_or(1.0, |[_, high]| high.value.max(1e-3));
+    while !(flow_at(high)? >= flow) {
+        // Beyond the last head with a solution the flow is NaN, and so is all above.
+        if high >= HIGHEST_HEAD || flow_at(high)?.is_nan() {
+            return Err(Refusal::NoHeadForFlow { flow, highest: high });
+        }
+        high = (high * 1.5).min(HIGHEST_HEAD);
+    }
+    let mut low = 0.0;
+    for _ in 0..100 {
+        let middle = f64::midpoint(low, high);
+        if middle <= low || middle >= high {
+            break;
+        }
+        if flow_at(middle)? < flow {
+            low = middle;
+        } else {
+            high = middle;
+        }
+    }
+    Ok(high)
+}
+
+fn kind_words(station: &Station) -> (String, String, String) {
+    match &station.kind {
+        Kind::Catalogue(structure) => (
+            structure.kind.to_owned(),
+            structure.title.to_owned(),
+            structure.standard.document.to_owned(),
+        ),
+        Kind::Own(_) => {
+            ("equation".to_owned(), "An equation of the station's own".to_owned(), String::new())
+        }
+    }
+}
+
+fn equations(setting: &Setting) -> Vec<(String, String)> {
+    let model = &setting.problem.model;
+    let unknowns = model.unknowns().iter().map(|unknown| {
+        (unknown.name.clone(), format!("root of 0 = {}", model.text(unknown.residual)))
+    });
+    // The result first, then what it is made of.
+    let definitions = model.definitions().iter().rev();
+    definitions
+        .map(|each| (each.name.clone(), model.text_of_definition(each.id)))
+        .chain(unknowns)
+        .collect()
+}
+
+fn input_rows(station: &Station, setting: &Setting, corrected: &[f64]) -> Vec<InputRow> {
+    let indicated = &setting.problem.indicated;
+    station
+        .inputs
+        .iter()
+        .enumerate()
+        .map(|(place, input)| {
+            let left_out = input.value.is_none() && input.key != "head";
+            InputRow {
+                key: input.key.clone(),
+                symbol: input.symbol.clone(),
+                stated: input.text.clone(),
+                indicated: (!left_out).then_some(indicated[place]),
+                corrected: (!left_out).then_some(corrected[place]),
+                unit: input.dimension.to_string(),
+                evidence: input.evidence.clone(),
+            }
+        })
+        .collect()
+}
+
+fn per_cent(part: f64, whole: f64) -> Option<f64> {
+    (whole != 0.0).then(|| 100.0 * part / whole.abs())
+}
+
+fn result_part(
+    station: &Station,
+    setting: &Setting,
+    linear: &Linear,
+    expanded_uncertainty: f64,
+) -> ResultPart {
+    let model = &setting.problem.model;
+    let (name, stated_unit) = match &station.kind {
+        Kind::Catalogue(_) => ("discharge".to_owned(), None),
+        Kind::Own(equation) => (model.result_name().to_owned(), Some(equation.unit.clone())),
+    };
+    let known_bias = linear.indicated - linear.value;
+    ResultPart {
+        name,
+        unit: Unit::si(model.result_dimension()),
+        stated_unit,
+        value: linear.value,
+        indicated: linear.indicated,
+        known_bias,
+        relative_expanded_percent: per_cent(expanded_uncertainty, linear.value),
+        relative_bias_percent: per_cent(known_bias, linear.value),
+    }
+}
+
+/// Runs the Monte Carlo method with its shares, and notes what was special about the trials.
+fn run_monte_carlo(
+    setting: &mut Setting,
+    question: &Question,
+    linear: &Linear,
+    expanded_uncertainty: f64,
+    progress: &(dyn Fn(u64) + Sync),
+    warnings: &mut Vec<Warning>,
+) -> Option<(MonteCarloPart, Vec<Share>)> {
+    let amount = question.trials?;
+    let probability = question.coverage.probability();
+    let problem = &mut setting.problem;
+    let Some(result) = monte_carlo(problem, amount, question.seed, probability, progress) else {
+        warnings.push(Warning::new(
+            Code::TrialsUndefined,
+            "the Monte Carlo method is left out: too few trials have a value",
+        ));
+        return None;
+    };
+    let shares = shares(problem, question.seed);
+    let statistics = result.outputs[0];
+    let agreement = Agreement::new(
+        linear.value,
+        expanded_uncertainty,
+        statistics.intervals.symmetric,
+        statistics.standard_uncertainty,
+    );
+    warnings.extend(trial_warnings(&result));
+    for source in problem.sources.iter().filter(|source| !source.distribution.has_moments()) {
+        warnings.push(Warning::new(
+            Code::MomentsDoNotExist,
+            format!(
+                "`{}`: a t distribution with 1 or 2 degrees of freedom has no standard deviation; \
+                 the Monte Carlo standard uncertainty has no meaning, the interval has",
+                source.name
+            ),
+        ));
+    }
+    if !agreement.linear_is_adequate() {
+        warnings.push(Warning::new(
+            Code::LinearNotAdequate,
+            "the linear method is not adequate here (JCGM 101 clause 8): take the Monte Carlo \
+             interval, and the shares as a guide only",
+        ));
+    }
+    let part = MonteCarloPart { result, agreement, base_trials: shares.base_trials };
+    Some((part, shares.sources))
+}
+
+fn trial_warnings(result: &MonteCarlo) -> Vec<Warning> {
+    let share = |count: u64| {
+        let percent = 100.0 * count as f64 / result.trials as f64;
+        format!("in {count} of {} trials ({} %)", result.trials, significant(percent, 3))
+    };
+    let mut warnings = Vec::new();
+    if result.tally.dry > 0 {
+        let text =
+            format!("{} no water passes the crest; the result is 0 there", share(result.tally.dry));
+        warnings.push(Warning::new(Code::TrialsWithoutFlow, text));
+    }
+    if result.tally.outside_table > 0 {
+        let text = format!(
+            "{} a published table or curve is left; its end value is held",
+            share(result.tally.outside_table)
+        );
+        warnings.push(Warning::new(Code::TrialsOutsideTable, text));
+    }
+    if result.tally.undefined > 0 {
+        let text = format!(
+            "{} the equation has no value; they are left out, and the interval is too narrow",
+            share(result.tally.undefined)
+        );
+        warnings.push(Warning::new(Code::TrialsUndefined, text));
+    }
+    if !result.settled {
+        let text = format!(
+            "after {} trials the figures have not settled to two digits; take the interval with care",
+            result.trials
+        );
+        warnings.push(Warning::new(Code::NotSettled, text));
+    }
+    warnings
+}
+
+fn freedom_warning(linear: &Linear) -> Option<Warning> {
+    (linear.degrees_of_freedom == DegreesOfFreedom::Undefined).then(|| {
+        Warning::new(
+            Code::DegreesOfFreedomUndefined,
+            "correlated sources have finite degrees of freedom, for which JCGM 100 has no rule \
+             (JCGM 101 5.7.2): the coverage factor is that of a normal distribution",
+        )
+    })
+}
+
+/// Whether the corrected values lie at a node of a published table, or outside one.
+fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Warning> {
+    let model = &mut setting.problem.model;
+    let mut warnings = Vec::new();
+    for (table, arguments) in model.look_ups() {
+        let (values, _) = model.evaluate(&arguments, corrected);
+        let table = model.table(table);
+        let name = table.name().to_owned();
+        let places = table.axes().into_iter().zip(&values).take(table.arguments());
+        // A value that is the same in every trial has no slope to jump.
+        let varying = arguments.iter().map(|id| model.graph().as_number(*id).is_none());
+        for ((axis, value), varies) in places.zip(varying) {
+            if axis.excludes(*value) {
+                let text = format!(
+                    "the published table {name} ends before {}: its end value is held",
+                    significant(*value, 4)
+                );
+                warnings.push(Warning::new(Code::TableEndHeld, text));
+            } else if varies && axis.has_node_at(*value) {
+                let text = format!(
+                    "{} is a node of the published table {name}, where the slope jumps: the \
+                     sensitivity is that of the segment above",
+                    significant(*value, 4)
+                );
+                warnings.push(Warning::new(Code::TableNode, text));
+            }
+        }
+    }
+    warnings
+}
+
+/// Which published numbers behind the result are quoted from memory.
+fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option<Warning> {
+    let (structure, regime) = setting.regime?;
+    let mut from_memory: Vec<String> = memory_numbers(structure, regime);
+    for row in &setting.problem.sources {
+        let published = setting
+            .rows
+            .iter()
+            .zip(&setting.problem.sources)
+            .find(|(_, source)| source.name == row.name)
+            .and_then(|(row, _)| row.published);
+        if published.is_some_and(|(_, confidence)| confidence.is_memory()) {
+            from_memory.push(format!("the uncertainty of `{}`", row.name));
+        }
+    }
+    if limits.iter().any(|limit| limit.from_memory) {
+        from_memory.push("limits of use".to_owned());
+    }
+    (!from_memory.is_empty()).then(|| {
+        Warning::new(
+            Code::FromMemory,
+            format!(
+                "quoted from memory, confirm against your copy of {}: {}",
+                structure.standard.document,
+                from_memory.join(", ")
+            ),
+        )
+    })
+}
+
+/// Constants and tables that the equation of a regime uses and that are quoted from memory.
+fn memory_numbers(structure: &Structure, regime: &Regime) -> Vec<String> {
+    let uses = |name: &str| {
+        let words = regime.definitions.iter().flat_map(|(_, text)| {
+            text.split(|c: char| !(c.is_alphanumeric() || c == '_')).collect::<Vec<_>>()
+        });
+        words.into_iter().any(|word| word == name)
+    };
+    let constants = structure
+        .constants
+        .iter()
+        .filter(|each| each.confidence.is_memory() && uses(each.symbol))
+        .map(|each| each.meaning.to_owned());
+    let tables = structure
+        .tables
+        .iter()
+        .filter(|each| each.confidence.is_memory() && uses(each.name))
+        .map(|each| format!("table {}", each.name));
+    constants.chain(tables).collect()
+}
+
+fn rows(
+    setting: &Setting,
+    linear: &Linear,
+    shares: Option<&[Share]>,
+    limits: &[LimitState],
+    corrected: &[f64],
+) -> Vec<BudgetRow> {
+    let problem = &setting.problem;
+    let outside = limits.iter().any(|limit| !limit.kept);
+    let groups = problem.groups();
+    linear
+        .ranking()
+        .into_iter()
+        .filter(|place| !setting.rows[*place].is_correction)
+        .zip(1..)
+        .map(|(place, rank)| {
+            let (source, row) = (&problem.sources[place], &setting.rows[place]);
+            let contribution = linear.contributions[place];
+            let group = groups.iter().find(|group| group.contains(&place));
+            let others = group.into_iter().flatten().filter(|other| **other != place);
+            BudgetRow {
+                rank,
+                name: source.name.clone(),
+                acts_on: row.acts_on.clone(),
+                size: row.size.clone(),
+                fixed_until: row.fixed_until.clone(),
+                standard_uncertainty: contribution.standard_uncertainty,
+                unit: row.unit.clone(),
+                degrees_of_freedom: source.degrees_of_freedom,
+                sensitivity: contribution.sensitivity,
+                contribution: contribution.contribution,
+                contribution_percent: per_cent(contribution.contribution, linear.value),
+                head_uncertainty: head_uncertainty(setting, place, corrected),
+                share_linear: contribution.share,
+                share: shares.map(|shares| shares[place]),
+                correlated_with: others.map(|o| problem.sources[*o].name.clone()).collect(),
+                evidence: row.evidence.clone(),
+                published: row
+                    .published
+                    .map(|(by, known)| (by.document.to_owned(), known.words().to_owned())),
+                outside_limits: outside && source.name == PUBLISHED_COEFFICIENT,
+                replaces: row.replaces.clone(),
+            }
+        })
+        .collect()
+}
+
+/// What a source's standard uncertainty is in metres of head.
+fn head_uncertainty(setting: &Setting, place: usize, corrected: &[f64]) -> Option<f64> {
+    use crate::propagation::Action;
+
+    let head = setting.problem.model.input("head")?;
+    let source = &setting.problem.sources[place];
+    let effect = source.effects.iter().find(|effect| effect.input == head)?;
+    let u = source.distribution.standard_uncertainty();
+    Some(match effect.action {
+        Action::Shift { gain } => (gain * u).abs(),
+        Action::Scale => (corrected[head] * u).abs(),
+    })
+}
+
+/// Known biases, each with what leaving it in would do.
+fn corrections(setting: &Setting, linear: &Linear) -> Vec<Correction> {
+    setting
+        .problem
+        .sources
+        .iter()
+        .zip(&setting.rows)
+        .zip(&linear.contributions)
+        .filter(|((source, _), _)| source.distribution.mean() != 0.0)
+        .map(|((source, row), contribution)| {
+            let bias = source.distribution.mean();
+            Correction {
+                name: source.name.clone(),
+                acts_on: row.acts_on.clone(),
+                bias,
+                unit: row.unit.clone(),
+                // The sensitivity is that of the corrected result to an error; left in, the error stays.
+                effect_percent: per_cent(-contribution.sensitivity * bias, linear.value),
+            }
+        })
+        .collect()
+}

@@ -1,0 +1,1 @@
+//! All integration tests in one binary. Each module says what belongs in it.
