@@ -8,15 +8,12 @@ use crate::report;
 use crate::study::{Sheet, sheet};
 
 pub(super) fn run(arguments: &StructuresArgs) -> Result<(), Failure> {
-    let (page, json) = match &arguments.kind {
-        Some(kind) => {
-            let sheet = sheet(find_structure(kind)?);
-            (report::sheet_document(&sheet), report::sheet_json(&sheet))
-        }
-        None => {
-            let sheets: Vec<Sheet> = CATALOGUE.iter().map(|structure| sheet(structure)).collect();
-            (report::catalogue_document(&sheets), report::sheets_json(&sheets))
-        }
+    let (page, json) = if let Some(kind) = &arguments.kind {
+        let sheet = sheet(find_structure(kind)?);
+        (report::sheet_document(&sheet), report::sheet_json(&sheet))
+    } else {
+        let sheets: Vec<Sheet> = CATALOGUE.iter().map(|structure| sheet(structure)).collect();
+        (report::catalogue_document(&sheets), report::sheets_json(&sheets))
     };
     output::print(&match arguments.format {
         Format::Table => report::text(&page, output::width()),

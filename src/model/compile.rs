@@ -238,8 +238,8 @@ impl<'m> Compiler<'m> {
             match value {
                 Value::Constant(value) if negative => constant -= value,
                 Value::Constant(value) => constant += value,
-                value if negative => subtracted.push(value),
-                value => added.push(value),
+                varying @ Value::Virtual(_) if negative => subtracted.push(varying),
+                varying @ Value::Virtual(_) => added.push(varying),
             }
         }
         let mut total = match added.split_first() {
@@ -322,7 +322,7 @@ impl<'m> Compiler<'m> {
 
     fn divide(&mut self, a: Value, b: Value) -> Value {
         match (a, b) {
-            (other, Value::Constant(c)) if c == 1.0 => other,
+            (other, Value::Constant(1.0)) => other,
             (Value::Virtual(r), Value::Constant(c)) => {
                 self.draft(DraftKind::Scale(1.0 / c), vec![r])
             }

@@ -5,6 +5,8 @@
 //! is evaluated, differentiated, printed and compiled ([`Program`]).
 
 mod allocate;
+mod blueprint;
+mod build;
 mod compile;
 pub mod expression;
 mod limits;
@@ -16,10 +18,9 @@ pub mod structures;
 mod system;
 mod tape;
 
+pub use blueprint::{Blueprint, Fault, FaultProblem, Input, Part, UnknownText};
 pub use limits::{Bound, Limit};
 pub use program::{Outcome, Program, Workspace};
 pub use source::{Citation, Confidence};
-pub use system::{
-    Blueprint, Definition, Fault, FaultProblem, Input, Model, Part, Unknown, UnknownText,
-};
+pub use system::{Definition, Model, Unknown};
 pub use tape::BLOCK;

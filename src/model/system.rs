@@ -1,116 +1,15 @@
 //! A model: named definitions over inputs, some of them given only by an equation they must satisfy.
 
 use std::collections::{BTreeMap, HashMap, HashSet};
-use std::ops::Range;
 
-use thiserror::Error;
-
+use super::blueprint::{Blueprint, Fault, Input, Part, mismatch_fault, syntax_fault};
+use super::build::Builder;
 use super::expression::{
-    Dimensions, Graph, Id, LowerError, MismatchError, Names, Node, Number, Scope, SymbolId,
-    SyntaxError, Table, TableId, Tree, TreeKind, parse, parse_equation,
+    Dimensions, Graph, Id, MismatchError, Names, Node, Number, Scope, SymbolId, Table, TableId,
+    Tree, parse,
 };
 use super::program::{Outcome, Program};
 use crate::units::Dimension;
-
-/// A quantity that a model takes from outside.
-#[derive(Clone, Debug, PartialEq)]
-pub struct Input {
-    /// Its key in a station file.
-    pub key: String,
-    /// Its symbol in equations.
-    pub symbol: String,
-    /// Its dimension.
-    pub dimension: Dimension,
-}
-
-/// The equations of a model as text, before they are checked.
-#[derive(Clone, Debug, Default)]
-pub struct Blueprint {
-    /// The inputs.
-    pub inputs: Vec<Input>,
-    /// Published constants: name, value in SI units, dimension.
-    pub constants: Vec<(String, f64, Dimension)>,
-    /// Tables that the definitions look up, with the dimension of their values. Their arguments are pure
-    /// numbers.
-    pub tables: Vec<(Table, Dimension)>,
-    /// Name and expression, in any order.
-    pub definitions: Vec<(String, String)>,
-    /// A quantity given by an equation that it must satisfy.
-    pub unknown: Option<UnknownText>,
-    /// The name of the result: a definition, or the unknown.
-    pub result: String,
-    /// An expression that is positive where water flows; elsewhere the result is 0.
-    pub flowing: Option<String>,
-    /// An expression that is positive where a published curve is left and its end held.
-    pub beyond: Option<String>,
-}
-
-/// A scalar unknown as text.
-#[derive(Clone, Debug, PartialEq)]
-pub struct UnknownText {
-    /// Its name.
-    pub name: String,
-    /// The equation it must satisfy.
-    pub equation: String,
-    /// The smallest value it can have; the root nearest above is meant.
-    pub from: String,
-    /// The largest value it can have.
-    pub to: String,
-}
-
-/// Which text of a blueprint a fault is in.
-#[derive(Clone, Debug, PartialEq, Eq, Hash, PartialOrd, Ord)]
-pub enum Part {
-    /// A definition, by name.
-    Definition(String),
-    /// The equation of the unknown.
-    Equation,
-    /// Its lower bound.
-    From,
-    /// Its upper bound.
-    To,
-    /// The name of the unknown.
-    UnknownName,
-    /// The name of the result.
-    Result,
-    /// An expression asked about the model: a limit, say.
-    Expression,
-}
-
-/// What is wrong with a blueprint, and where.
-#[derive(Clone, Debug, PartialEq, Error)]
-#[error("{problem}")]
-pub struct Fault {
-    /// The text.
-    pub part: Part,
-    /// The bytes in that text.
-    pub span: Range<usize>,
-    /// What is wrong.
-    pub problem: FaultProblem,
-}
-
-/// What can be wrong with a blueprint.
-#[derive(Clone, Debug, PartialEq, Error)]
-pub enum FaultProblem {
-    /// A text that cannot be read.
-    #[error(transparent)]
-    Syntax(#[from] SyntaxError),
-    /// A name that means nothing.
-    #[error(transparent)]
-    Name(#[from] LowerError),
-    /// Dimensions that do not fit.
-    #[error(transparent)]
-    Mismatch(#[from] MismatchError),
-    /// A name that has a meaning already.
-    #[error("`{0}` is defined twice")]
-    Duplicate(String),
-    /// Definitions that need each other.
-    #[error("these definitions need each other: {}", .0.join(", "))]
-    Circular(Vec<String>),
-    /// The result is neither a definition nor the unknown.
-    #[error("nothing defines the result `{0}`")]
-    NoResult(String),
-}
 
 /// A definition of a model.
 #[derive(Clone, Debug, PartialEq)]
@@ -155,17 +54,17 @@ pub(super) struct UnknownParts {
 /// A checked model: one graph for everything that is asked of it.
 #[derive(Clone, Debug)]
 pub struct Model {
-    graph: Graph,
-    inputs: Vec<Input>,
-    constants: Vec<(String, Id, Dimension)>,
-    tables: HashMap<String, (TableId, Dimension)>,
-    definitions: Vec<Definition>,
-    unknowns: Vec<Unknown>,
-    result: Id,
-    result_name: String,
-    result_dimension: Dimension,
-    flowing: Option<Id>,
-    beyond: Option<Id>,
+    pub(super) graph: Graph,
+    pub(super) inputs: Vec<Input>,
+    pub(super) constants: Vec<(String, Id, Dimension)>,
+    pub(super) tables: HashMap<String, (TableId, Dimension)>,
+    pub(super) definitions: Vec<Definition>,
+    pub(super) unknowns: Vec<Unknown>,
+    pub(super) result: Id,
+    pub(super) result_name: String,
+    pub(super) result_dimension: Dimension,
+    pub(super) flowing: Option<Id>,
+    pub(super) beyond: Option<Id>,
 }
 
 impl Model {
@@ -354,12 +253,12 @@ impl Model {
         result
     }
 
-    fn graph_dimension(&self, tree: &Tree) -> Result<Option<Dimension>, MismatchError> {
+    pub(super) fn graph_dimension(&self, tree: &Tree) -> Result<Option<Dimension>, MismatchError> {
         super::expression::check_dimensions(tree, self)
     }
 
     /// Lowers a tree into this model's graph, with faults placed in `part`.
-    fn lower(&mut self, tree: &Tree, part: &Part) -> Result<Id, Vec<Fault>> {
+    pub(super) fn lower(&mut self, tree: &Tree, part: &Part) -> Result<Id, Vec<Fault>> {
         let mut graph = std::mem::take(&mut self.graph);
         let symbols = self.symbol_ids(&mut graph);
         let scope = ModelScope { model: self, symbols };
@@ -437,325 +336,5 @@ impl Scope for ModelScope<'_> {
     fn known_names(&self) -> Vec<String> {
         let definitions = self.model.definitions.iter().map(|each| each.name.clone());
         self.symbols.keys().cloned().chain(definitions).collect()
-    }
-}
-
-fn syntax_fault(part: &Part, error: SyntaxError) -> Fault {
-    Fault { part: part.clone(), span: error.span.clone(), problem: error.into() }
-}
-
-fn mismatch_fault(part: &Part, error: MismatchError) -> Fault {
-    let span = error.places.first().map_or(0..0, |(span, _)| span.clone());
-    Fault { part: part.clone(), span, problem: error.into() }
-}
-
-/// The steps from a blueprint to a model.
-struct Builder<'a> {
-    blueprint: &'a Blueprint,
-    model: Model,
-    faults: Vec<Fault>,
-}
-
-impl<'a> Builder<'a> {
-    fn new(blueprint: &'a Blueprint) -> Self {
-        let mut graph = Graph::default();
-        // Symbols come first, in the order of the inputs, so that products print in that order.
-        for index in 0..blueprint.inputs.len() {
-            graph.symbol(SymbolId(index as u32));
-        }
-        let tables = blueprint
-            .tables
-            .iter()
-            .map(|(table, dimension)| {
-                (table.name().to_owned(), (graph.add_table(table.clone()), *dimension))
-            })
-            .collect();
-        let constants = blueprint
-            .constants
-            .iter()
-            .map(|(name, value, dimension)| {
-                (name.clone(), graph.number(Number::decimal(*value)), *dimension)
-            })
-            .collect();
-        let result = graph.whole(0);
-        let model = Model {
-            graph,
-            inputs: blueprint.inputs.clone(),
-            constants,
-            tables,
-            definitions: Vec::new(),
-            unknowns: Vec::new(),
-            result,
-            result_name: blueprint.result.clone(),
-            result_dimension: Dimension::NONE,
-            flowing: None,
-            beyond: None,
-        };
-        Self { blueprint, model, faults: Vec::new() }
-    }
-
-    fn build(mut self) -> Result<Model, Vec<Fault>> {
-        self.check_names();
-        let trees = self.parse_definitions();
-        let bounds = self.parse_bounds();
-        if !self.faults.is_empty() {
-            return Err(self.faults);
-        }
-        let order = self.order(&trees, bounds.as_ref());
-        if !self.faults.is_empty() {
-            return Err(self.faults);
-        }
-        for name in order {
-            match (trees.get(&name), &bounds) {
-                (Some(tree), _) => self.define(&name, tree),
-                (None, Some(bounds)) => self.declare_unknown(&name, bounds),
-                (None, None) => {}
-            }
-        }
-        self.close_unknown();
-        self.find_result();
-        self.read_conditions();
-        if self.faults.is_empty() { Ok(self.model) } else { Err(self.faults) }
-    }
-
-    fn fault(&mut self, part: Part, span: Range<usize>, problem: FaultProblem) {
-        self.faults.push(Fault { part, span, problem });
-    }
-
-    fn check_names(&mut self) {
-        let mut seen: HashSet<&str> =
-            self.blueprint.inputs.iter().map(|input| input.symbol.as_str()).collect();
-        for (name, _) in &self.blueprint.definitions {
-            if !seen.insert(name) {
-                let problem = FaultProblem::Duplicate(name.clone());
-                self.faults.push(Fault {
-                    part: Part::Definition(name.clone()),
-                    span: 0..0,
-                    problem,
-                });
-            }
-        }
-        if let Some(unknown) = &self.blueprint.unknown
-            && !seen.insert(&unknown.name)
-        {
-            let problem = FaultProblem::Duplicate(unknown.name.clone());
-            self.faults.push(Fault { part: Part::UnknownName, span: 0..0, problem });
-        }
-    }
-
-    fn parse_definitions(&mut self) -> BTreeMap<String, Tree> {
-        let mut trees = BTreeMap::new();
-        for (name, text) in &self.blueprint.definitions {
-            match parse(text) {
-                Ok(tree) => drop(trees.insert(name.clone(), tree)),
-                Err(error) => {
-                    self.faults.push(syntax_fault(&Part::Definition(name.clone()), error))
-                }
-            }
-        }
-        trees
-    }
-
-    /// The bounds of the unknown; its equation is read for its faults only, and again at the end.
-    fn parse_bounds(&mut self) -> Option<[Tree; 2]> {
-        let unknown = self.blueprint.unknown.as_ref()?;
-        if let Err(error) = parse_equation(&unknown.equation) {
-            self.faults.push(syntax_fault(&Part::Equation, error));
-        }
-        let mut read = |part, text| match parse(text) {
-            Ok(tree) => Some(tree),
-            Err(error) => {
-                self.faults.push(syntax_fault(&part, error));
-                None
-            }
-        };
-        let from = read(Part::From, &unknown.from);
-        let to = read(Part::To, &unknown.to);
-        Some([from?, to?])
-    }
-
-    /// Definitions in an order in which each stands after those it needs. The unknown needs its bounds.
-    fn order(&mut self, trees: &BTreeMap<String, Tree>, bounds: Option<&[Tree; 2]>) -> Vec<String> {
-        let mut needs: Vec<(String, HashSet<String>)> = Vec::new();
-        if let (Some(unknown), Some(bounds)) = (&self.blueprint.unknown, bounds) {
-            let mut names = HashSet::new();
-            bounds.iter().for_each(|tree| collect_names(tree, &mut names));
-            needs.push((unknown.name.clone(), names));
-        }
-        for (name, _) in &self.blueprint.definitions {
-            let mut names = HashSet::new();
-            collect_names(&trees[name], &mut names);
-            needs.push((name.clone(), names));
-        }
-        let defined: HashSet<String> = needs.iter().map(|(name, _)| name.clone()).collect();
-        for (_, names) in &mut needs {
-            names.retain(|name| defined.contains(name));
-        }
-        let mut order: Vec<String> = Vec::new();
-        while !needs.is_empty() {
-            let ready = |names: &HashSet<String>| names.iter().all(|name| order.contains(name));
-            let Some(next) = needs.iter().position(|(_, names)| ready(names)) else {
-                let mut circle: Vec<String> = needs.into_iter().map(|(name, _)| name).collect();
-                let first = circle[0].clone();
-                circle.sort_unstable();
-                let unknown = self.blueprint.unknown.as_ref().map(|unknown| &unknown.name);
-                let part =
-                    if unknown == Some(&first) { Part::From } else { Part::Definition(first) };
-                self.fault(part, 0..0, FaultProblem::Circular(circle));
-                return Vec::new();
-            };
-            order.push(needs.remove(next).0);
-        }
-        order
-    }
-
-    fn define(&mut self, name: &str, tree: &Tree) {
-        let part = Part::Definition(name.to_owned());
-        let lowered = self.model.lower(tree, &part);
-        let dimension = self.model.graph_dimension(tree);
-        match (lowered, dimension) {
-            (Ok(id), Ok(dimension)) => {
-                let id = self.model.graph.named(name, id);
-                let dimension = dimension.unwrap_or(Dimension::NONE);
-                self.model.definitions.push(Definition { name: name.to_owned(), id, dimension });
-            }
-            (lowered, dimension) => {
-                self.faults.extend(lowered.err().unwrap_or_default());
-                self.faults.extend(dimension.err().map(|error| mismatch_fault(&part, error)));
-                // The name stays known, so that what needs it is not reported as well.
-                let id = self.model.graph.whole(0);
-                let name = name.to_owned();
-                self.model.definitions.push(Definition { name, id, dimension: Dimension::NONE });
-            }
-        }
-    }
-
-    /// The unknown as a symbol, with its bounds; its equation may need definitions that come later.
-    fn declare_unknown(&mut self, name: &str, bounds: &[Tree; 2]) {
-        let zero = self.model.graph.whole(0);
-        let mut ids = [zero, zero];
-        let mut dimensions = [Dimension::NONE; 2];
-        for (index, (tree, part)) in bounds.iter().zip([Part::From, Part::To]).enumerate() {
-            match self.model.lower(tree, &part) {
-                Ok(id) => ids[index] = id,
-                Err(faults) => self.faults.extend(faults),
-            }
-            match self.model.graph_dimension(tree) {
-                Ok(dimension) => dimensions[index] = dimension.unwrap_or(Dimension::NONE),
-                Err(error) => self.faults.push(mismatch_fault(&part, error)),
-            }
-        }
-        if self.faults.is_empty() && dimensions[0] != dimensions[1] {
-            let [from, to] = dimensions.map(Dimension::described);
-            let message = format!("both bounds need one dimension: `from` is {from}, `to` is {to}");
-            let places = vec![(bounds[1].span.clone(), to)];
-            self.faults.push(mismatch_fault(&Part::To, MismatchError { message, places }));
-        }
-        let symbol = SymbolId((self.model.inputs.len() + self.model.unknowns.len()) as u32);
-        self.model.graph.symbol(symbol);
-        self.model.unknowns.push(Unknown {
-            name: name.to_owned(),
-            symbol,
-            dimension: dimensions[0],
-            residual: zero,
-            slope: zero,
-            lower: ids[0],
-            upper: ids[1],
-        });
-    }
-
-    fn close_unknown(&mut self) {
-        let Some(text) = self.blueprint.unknown.as_ref() else { return };
-        if !self.faults.is_empty() {
-            return;
-        }
-        let Ok(sides) = parse_equation(&text.equation) else { return };
-        let [left, right] = &sides;
-        let lowered = [left, right].map(|side| self.model.lower(side, &Part::Equation));
-        let dimensions = [left, right].map(|side| self.model.graph_dimension(side));
-        match dimensions {
-            [Ok(Some(left_dimension)), Ok(Some(right_dimension))]
-                if left_dimension != right_dimension =>
-            {
-                let described = [left_dimension, right_dimension].map(Dimension::described);
-                let message = format!(
-                    "the two sides differ in dimension: the left is {}, the right is {}",
-                    described[0], described[1]
-                );
-                let places = [left, right].map(|side| side.span.clone()).into_iter().zip(described);
-                let places = places.collect();
-                let error = MismatchError { message, places };
-                self.faults.push(mismatch_fault(&Part::Equation, error));
-            }
-            results => {
-                for error in results.into_iter().filter_map(Result::err) {
-                    self.faults.push(mismatch_fault(&Part::Equation, error));
-                }
-            }
-        }
-        match lowered {
-            [Ok(left), Ok(right)] => {
-                let residual = self.model.graph.difference(left, right);
-                let index = self.model.unknowns.len() - 1;
-                let slope =
-                    self.model.graph.derivative(residual, self.model.unknowns[index].symbol);
-                self.model.unknowns[index].residual = residual;
-                self.model.unknowns[index].slope = slope;
-            }
-            sides => self.faults.extend(sides.into_iter().filter_map(Result::err).flatten()),
-        }
-    }
-
-    fn find_result(&mut self) {
-        let name = &self.blueprint.result;
-        let definition = self.model.definitions.iter().find(|each| each.name == *name);
-        let unknown = self.model.unknowns.iter().find(|each| each.name == *name);
-        match (definition, unknown) {
-            (Some(definition), _) => {
-                self.model.result_dimension = definition.dimension;
-                self.model.result = definition.id;
-            }
-            (None, Some(unknown)) => {
-                self.model.result_dimension = unknown.dimension;
-                let symbol = unknown.symbol;
-                self.model.result = self.model.graph.symbol(symbol);
-            }
-            (None, None) => {
-                self.fault(Part::Result, 0..0, FaultProblem::NoResult(name.clone()));
-            }
-        }
-    }
-
-    fn read_conditions(&mut self) {
-        if !self.faults.is_empty() {
-            return;
-        }
-        let Blueprint { flowing, beyond, .. } = self.blueprint;
-        let mut read = |text: &Option<String>| match self.model.expression(text.as_ref()?) {
-            Ok((id, _)) => Some(id),
-            Err(faults) => {
-                self.faults.extend(faults);
-                None
-            }
-        };
-        let (flowing, beyond) = (read(flowing), read(beyond));
-        self.model.flowing = flowing;
-        self.model.beyond = beyond;
-    }
-}
-
-/// All names in a tree, those of functions and tables too.
-fn collect_names(tree: &Tree, names: &mut HashSet<String>) {
-    match &tree.kind {
-        TreeKind::Number(_) => {}
-        TreeKind::Name(name) => drop(names.insert(name.clone())),
-        TreeKind::Sum(parts) | TreeKind::Product(parts) => {
-            parts.iter().for_each(|(_, part)| collect_names(part, names));
-        }
-        TreeKind::Power(parts) => parts.iter().for_each(|part| collect_names(part, names)),
-        TreeKind::Call(_, parts) => parts.iter().for_each(|part| collect_names(part, names)),
-        TreeKind::Choose { parts, .. } => {
-            parts.iter().for_each(|part| collect_names(part, names));
-        }
     }
 }

@@ -30,7 +30,7 @@ pub struct Contribution {
     pub sensitivity: f64,
     /// Absolute sensitivity times standard uncertainty.
     pub contribution: f64,
-    /// Share of the combined variance, its correlations included: c_i u_i sum_j(r_ij c_j u_j) / u_c^2.
+    /// Share of the combined variance, its correlations included: `c_i` `u_i` `sum_j(r_ij` `c_j` `u_j`) / `u_c^2`.
     pub share: f64,
 }
 
@@ -69,7 +69,9 @@ impl Linear {
                 _ => levels.push(vec![place]),
             }
         }
-        levels.iter_mut().for_each(|level| level.sort_unstable());
+        for level in &mut levels {
+            level.sort_unstable();
+        }
         levels.concat()
     }
 }

@@ -92,10 +92,9 @@ fn run_super_block(
                 .chain(mixed)
                 .map(|sample| {
                     sampler.fill_inputs(program, &mut workspace, |source| match sample {
-                        Sample::A => &a[source],
                         Sample::B => &b[source],
                         Sample::Mixed(group) if groups[group].contains(&source) => &b[source],
-                        Sample::Mixed(_) => &a[source],
+                        Sample::A | Sample::Mixed(_) => &a[source],
                     });
                     program.run(&mut workspace, BLOCK, &mut outcomes);
                     program.output(&workspace, 0).to_vec()

@@ -277,8 +277,8 @@ fn correction_table(page: &mut Document, budget: &Budget) {
             } else {
                 format!("{} {unit}", significant(*bias, 3))
             };
-            let effect = effect_percent
-                .map_or_else(|| "-".to_owned(), |percent| format!("{}", significant(percent, 3)));
+            let effect =
+                effect_percent.map_or_else(|| "-".to_owned(), |percent| significant(percent, 3));
             vec![name.clone(), acts_on.join(", "), size, effect]
         })
         .collect();

@@ -46,7 +46,7 @@ pub fn budget_csv(budget: &Budget) -> String {
     }
     for (name, value) in results {
         let mut cells = vec![String::new(); header.len()];
-        cells[1] = name.to_owned();
+        name.clone_into(&mut cells[1]);
         cells[8] = number(value);
         cells[9] = budget.result.unit.to_string();
         line(&mut out, &cells);

@@ -23,7 +23,7 @@ fn block(block: &Block) -> String {
             let mut out = format!("| {} |\n| {} |\n", headings.join(" | "), rules.join(" | "));
             for row in rows {
                 let cells: Vec<String> = row.iter().map(|cell| escaped(cell)).collect();
-                out.push_str(&format!("| {} |\n", cells.join(" | ")));
+                out += &["| ", &cells.join(" | "), " |\n"].concat();
             }
             out
         }

@@ -25,18 +25,21 @@ pub fn text(document: &Document, width: u16) -> String {
         }
         match block {
             Block::Title(title) | Block::Heading(title) => {
-                out.push_str(&format!("{bold}{title}{bold:#}\n"));
+                out += &styled(bold, title);
+                out.push('\n');
             }
             Block::Paragraph(words) => out.push_str(&wrapped(words, width, "")),
             Block::Lines(lines) => {
-                lines.iter().for_each(|line| out.push_str(&format!("  {line}\n")));
+                for line in lines {
+                    out += &["  ", line, "\n"].concat();
+                }
             }
             Block::Table { columns, rows } => {
                 out.push_str(&table(columns, rows, width));
                 out.push('\n');
             }
             Block::Warning { code, text } => {
-                out.push_str(&format!("{yellow}warning{yellow:#} [{code}]\n"));
+                out += &[&styled(yellow, "warning"), " [", code, "]\n"].concat();
                 out.push_str(&wrapped(text, width, "  "));
             }
         }
@@ -60,6 +63,11 @@ fn table(columns: &[(String, bool)], rows: &[Vec<String>], width: u16) -> String
         table.add_row(cells);
     }
     table.to_string().lines().map(str::trim_end).collect::<Vec<_>>().join("\n")
+}
+
+/// Text in a style.
+fn styled(style: Style, text: &str) -> String {
+    format!("{style}{text}{style:#}")
 }
 
 /// Words wrapped at blanks.

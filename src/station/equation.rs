@@ -85,7 +85,9 @@ pub(super) fn read(
     let model = match Model::build(&blueprint) {
         Ok(model) => model,
         Err(faults) => {
-            faults.iter().for_each(|fault| report(fault, &places, findings));
+            for fault in &faults {
+                report(fault, &places, findings);
+            }
             return None;
         }
     };

@@ -9,6 +9,7 @@ use super::correlation::{self, StatedCorrelation};
 use super::head::{self, Head};
 use super::section::{Findings, Section};
 use super::source::{self, ErrorSource};
+use super::spread::Spread;
 use super::structure::{self, Kind, StationInput, StructureSection};
 use crate::diagnostic::{Code, Diagnostic, Severity, Span, Warning};
 use crate::model::structures::PUBLISHED_COEFFICIENT;
@@ -85,7 +86,9 @@ pub fn read(bytes: &[u8]) -> (Option<Station>, Vec<Diagnostic>) {
     let mut list = findings.list;
     list.sort_by_key(|diagnostic| diagnostic.labels.first().map_or(0, |label| label.span.start));
     list.truncate(MOST_FINDINGS);
-    list.iter_mut().for_each(|diagnostic| shift(diagnostic, offset));
+    for diagnostic in &mut list {
+        shift(diagnostic, offset);
+    }
     let failed = list.iter().any(|diagnostic| diagnostic.severity == Severity::Error);
     (station.filter(|_| !failed), list)
 }
@@ -100,7 +103,7 @@ pub(crate) fn too_large(bytes: u64) -> Diagnostic {
 }
 
 fn not_text(content: &[u8], valid: usize) -> Diagnostic {
-    let line = content[..valid].iter().filter(|byte| **byte == b'\n').count() + 1;
+    let line = content[..valid].split(|byte| *byte == b'\n').count();
     Diagnostic::about_file(
         Code::NotText,
         format!("the file is not UTF-8 text: byte {} on line {line}", valid + 1),
@@ -120,7 +123,9 @@ fn hexadecimal(bytes: &[u8]) -> String {
 
 fn shift(diagnostic: &mut Diagnostic, offset: usize) {
     let move_span = |span: &mut Span| *span = span.start + offset..span.end + offset;
-    diagnostic.labels.iter_mut().for_each(|label| move_span(&mut label.span));
+    for label in &mut diagnostic.labels {
+        move_span(&mut label.span);
+    }
     if let Some(fix) = &mut diagnostic.fix {
         move_span(&mut fix.span);
     }
@@ -398,7 +403,7 @@ fn warnings(
         ));
     }
     for source in sources {
-        if source.spread == source::Spread::None {
+        if source.spread == Spread::None {
             warnings.push(Warning::new(
                 Code::BiasWithoutUncertainty,
                 format!("`{}` states a bias but not how well it is known", source.name),

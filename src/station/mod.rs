@@ -12,6 +12,8 @@ mod section;
 mod setting;
 mod size;
 mod source;
+mod spread;
+mod spread_reader;
 mod structure;
 mod template;
 
@@ -22,5 +24,6 @@ pub use quantity::Stated;
 pub use setting::{Refusal, Setting, SourceRow};
 pub use size::{Amount, Size};
 pub use source::{ErrorSource, FixedUntil};
+pub use spread::{Shape, Spread, Width};
 pub use structure::{Evidence, Kind, StationInput};
 pub use template::{equation_template, template};

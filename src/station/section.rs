@@ -141,7 +141,7 @@ impl<'a, 'i> Section<'a, 'i> {
 
     /// Complains of every key that was not asked for.
     pub(super) fn finish(self, findings: &mut Findings<'_>) {
-        for (name, _) in self.table.iter() {
+        for (name, _) in self.table {
             let key: &str = name.get_ref();
             if self.known.contains(key) {
                 continue;
@@ -149,16 +149,13 @@ impl<'a, 'i> Section<'a, 'i> {
             let shown: String = key.chars().take(60).collect();
             let title = format!("unknown key `{shown}` in {}", self.name);
             let mut diagnostic = Diagnostic::error(Code::UnknownKey, name.span(), title);
-            match nearest(key, self.known.iter().map(String::as_str)) {
-                Some(known) => {
-                    diagnostic = diagnostic
-                        .help(format!("the nearest known key is `{known}`"))
-                        .fix(name.span(), known);
-                }
-                None => {
-                    let keys: Vec<&str> = self.known.iter().map(String::as_str).collect();
-                    diagnostic = diagnostic.help(format!("known keys: {}", keys.join(", ")));
-                }
+            if let Some(known) = nearest(key, self.known.iter().map(String::as_str)) {
+                diagnostic = diagnostic
+                    .help(format!("the nearest known key is `{known}`"))
+                    .fix(name.span(), known);
+            } else {
+                let keys: Vec<&str> = self.known.iter().map(String::as_str).collect();
+                diagnostic = diagnostic.help(format!("known keys: {}", keys.join(", ")));
             }
             findings.push(diagnostic);
         }

@@ -24,6 +24,9 @@ pub struct Setting {
     pub warnings: Vec<Warning>,
 }
 
+/// A structure and the form of its equation that holds.
+type Form = (&'static Structure, &'static Regime);
+
 /// What a source of a problem is in the file.
 #[derive(Clone, Debug, PartialEq)]
 pub struct SourceRow {
@@ -140,7 +143,7 @@ impl Station {
     fn model(
         &self,
         indicated: &dyn Fn(&StationInput) -> Option<f64>,
-    ) -> Result<(Model, Option<(&'static Structure, &'static Regime)>), Refusal> {
+    ) -> Result<(Model, Option<Form>), Refusal> {
         match &self.kind {
             Kind::Own(equation) => {
                 Ok((Model::build(&equation.blueprint).map_err(Refusal::Equation)?, None))

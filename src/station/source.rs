@@ -1,16 +1,13 @@
 //! `[[error_source]]`: what can make an input wrong, and by how much.
 
-use toml::Spanned;
-use toml::de::DeValue;
-
-use super::section::{Findings, Section, article, number, string};
+use super::section::{Findings, Section, number, string};
 use super::size::{self, Amount, Size};
-use super::structure::{
-    Evidence, StationInput, mean, read_evidence, read_observations, standard_deviation,
-};
+use super::spread::{Spread, Width, shift};
+use super::spread_reader::Reader;
+use super::structure::{Evidence, StationInput, read_evidence};
 use crate::diagnostic::{Code, Diagnostic, Span, nearest};
-use crate::propagation::{Coverage, DegreesOfFreedom, Distribution};
-use crate::units::{Dimension, Quantity};
+use crate::propagation::Distribution;
+use crate::units::Dimension;
 
 /// An error source as a file states it.
 #[derive(Clone, Debug, PartialEq)]
@@ -94,104 +91,14 @@ impl FixedUntil {
 
     /// A new draw is made so often that the spread of single observations counts, not that of their
     /// mean.
-    fn is_redrawn(self) -> bool {
+    pub(super) fn is_redrawn(self) -> bool {
         matches!(self, Self::Visit | Self::Cleaning | Self::Reading | Self::CorrelationTime(_))
     }
 }
 
 /// Three decimals at the most.
-fn round_to(value: f64) -> f64 {
+pub(super) fn round_to(value: f64) -> f64 {
     (value * 1000.0).round() / 1000.0
-}
-
-/// The spread of a source, before it is known for what value of the input.
-#[derive(Clone, Debug, PartialEq)]
-pub enum Spread {
-    /// A standard uncertainty or a half-width, and the shape that it belongs to.
-    Shape(Shape, Width),
-    /// Limits, not symmetric.
-    Limits(Shape, Amount, Amount),
-    /// Observed errors, in SI units or as fractions.
-    Observed {
-        /// Their mean: a known bias.
-        mean: f64,
-        /// Standard uncertainty of the next draw.
-        scale: f64,
-    },
-    /// Values with their probabilities.
-    Table(Vec<f64>, Vec<f64>),
-    /// A known bias alone.
-    None,
-}
-
-/// What a width is.
-#[derive(Clone, Debug, PartialEq)]
-pub enum Width {
-    /// A standard uncertainty.
-    Standard(Amount),
-    /// A standard uncertainty times this factor.
-    Expanded(Amount, f64),
-    /// A half-width.
-    Half(Amount),
-    /// A whole step, of which half counts each way.
-    Step(Amount),
-}
-
-/// The shape of a distribution.
-#[derive(Clone, Debug, PartialEq)]
-pub enum Shape {
-    /// Normal.
-    Normal,
-    /// Rectangular.
-    Rectangular,
-    /// Triangular.
-    Triangular,
-    /// Arcsine.
-    Arcsine,
-    /// Trapezoidal, with the half-width of its flat top.
-    Trapezoidal(Amount),
-    /// Curvilinear trapezoid, with how well the limits are known.
-    CurvilinearTrapezoid(Amount),
-}
-
-impl Shape {
-    const WORDS: [&'static str; 6] =
-        ["normal", "rectangular", "triangular", "trapezoidal", "arcsine", "curvilinear-trapezoid"];
-
-    fn word(&self) -> &'static str {
-        match self {
-            Self::Normal => "normal",
-            Self::Rectangular => "rectangular",
-            Self::Triangular => "triangular",
-            Self::Arcsine => "arcsine",
-            Self::Trapezoidal(_) => "trapezoidal",
-            Self::CurvilinearTrapezoid(_) => "curvilinear-trapezoid",
-        }
-    }
-
-    /// The distribution with a half-width.
-    fn with_half_width(&self, mean: f64, half_width: f64, value: f64) -> Distribution {
-        match self {
-            Self::Normal => Distribution::Normal { mean, standard_uncertainty: half_width },
-            Self::Rectangular => Distribution::Rectangular { mean, half_width },
-            Self::Triangular => Distribution::Triangular { mean, half_width },
-            Self::Arcsine => Distribution::Arcsine { mean, half_width },
-            Self::Trapezoidal(flat) => {
-                Distribution::Trapezoidal { mean, half_width, flat_half_width: flat.at(value) }
-            }
-            Self::CurvilinearTrapezoid(limit) => Distribution::CurvilinearTrapezoid {
-                mean,
-                half_width,
-                limit_half_width: limit.at(value),
-            },
-        }
-    }
-
-    /// The distribution with a standard uncertainty, for shapes that one number fixes.
-    fn with_standard_uncertainty(&self, u: f64) -> Distribution {
-        let unit = self.with_half_width(0.0, 1.0, 0.0).standard_uncertainty();
-        self.with_half_width(0.0, u / unit, 0.0)
-    }
 }
 
 impl ErrorSource {
@@ -239,37 +146,6 @@ impl ErrorSource {
     }
 }
 
-/// The same distribution about a mean that lies higher by `bias`.
-fn shift(distribution: Distribution, bias: f64) -> Distribution {
-    let mut shifted = distribution;
-    match &mut shifted {
-        Distribution::Fixed { mean }
-        | Distribution::Normal { mean, .. }
-        | Distribution::Rectangular { mean, .. }
-        | Distribution::Triangular { mean, .. }
-        | Distribution::Trapezoidal { mean, .. }
-        | Distribution::Arcsine { mean, .. }
-        | Distribution::CurvilinearTrapezoid { mean, .. }
-        | Distribution::ScaledT { mean, .. } => *mean += bias,
-        Distribution::Discrete { values, .. } => values.iter_mut().for_each(|each| *each += bias),
-        Distribution::Occasional { distribution, .. } => {
-            **distribution = shift((**distribution).clone(), bias);
-        }
-    }
-    shifted
-}
-
-/// Keys that state a size; just one of them is due.
-const SIZE_KEYS: [&str; 7] = [
-    "standard_uncertainty",
-    "expanded_uncertainty",
-    "half_width",
-    "error_from",
-    "resolution",
-    "observations",
-    "table",
-];
-
 /// Reads one source. `inputs` are those of the structure; `automatic` the names of automatic sources.
 pub(super) fn read(
     mut section: Section<'_, '_>,
@@ -289,7 +165,7 @@ pub(super) fn read(
     }
     let acts_on = read_acts_on(&mut section, inputs, findings);
     let dimension =
-        acts_on.as_ref().and_then(|places| common_dimension(places, inputs, &section, findings));
+        acts_on.as_ref().map(|places| common_dimension(places, inputs, &section, findings));
     let replaces = read_replaces(&mut section, automatic, findings);
     let fixed_until = read_fixed_until(&mut section, findings);
     let reliable = section.get("reliable_to").is_some();
@@ -424,7 +300,7 @@ fn common_dimension(
     inputs: &[StationInput],
     section: &Section<'_, '_>,
     findings: &mut Findings<'_>,
-) -> Option<Dimension> {
+) -> Dimension {
     let first = &inputs[places[0]];
     let other = places.iter().map(|place| &inputs[*place]).find(|i| i.dimension != first.dimension);
     if let Some(other) = other {
@@ -444,7 +320,7 @@ fn common_dimension(
             .help("one error shifts inputs of one dimension; write two sources and correlate them"),
         );
     }
-    Some(first.dimension)
+    first.dimension
 }
 
 fn read_replaces(
@@ -497,7 +373,13 @@ fn read_fixed_until(
     found.map(|(_, fixed_until)| *fixed_until)
 }
 
-fn unknown_word(key: &str, word: &str, words: &[&str], span: Span, findings: &mut Findings<'_>) {
+pub(super) fn unknown_word(
+    key: &str,
+    word: &str,
+    words: &[&str],
+    span: Span,
+    findings: &mut Findings<'_>,
+) {
     let shown: String = word.chars().take(60).collect();
     let title = format!("`{key}` cannot be `{shown}`");
     let diagnostic = Diagnostic::error(Code::UnknownWord, span.clone(), title)
@@ -597,423 +479,4 @@ fn read_bias(
         (None, None) => return None,
     };
     Some((sign, size::read(key, value, dimension, findings)?))
-}
-
-/// A size that was read.
-struct ReadSize {
-    spread: Spread,
-    /// `None` where nothing but a bias is stated.
-    kind: Option<Size>,
-    text: String,
-    freedom: Option<f64>,
-}
-
-/// Reads the one way in which a source states its size.
-struct Reader<'r, 's, 'a, 'i, 't> {
-    section: &'s mut Section<'a, 'i>,
-    dimension: Option<Dimension>,
-    findings: &'r mut Findings<'t>,
-    freedom: Option<f64>,
-    fixed_until: Option<FixedUntil>,
-}
-
-impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
-    fn read(mut self, has_bias: bool) -> Option<ReadSize> {
-        let error_to = self.section.get("error_to");
-        let stated: Vec<&str> =
-            SIZE_KEYS.into_iter().filter(|key| self.section.get(key).is_some()).collect();
-        let shape = self.read_shape(&stated);
-        for key in ["coverage_factor", "coverage"] {
-            let span = self.section.get(key).map(Spanned::span);
-            if let Some(span) = span.filter(|_| stated != ["expanded_uncertainty"]) {
-                self.disagree(span, &format!("`{key}` belongs to `expanded_uncertainty`"));
-            }
-        }
-        match stated.as_slice() {
-            [] if error_to.is_some() => {
-                self.missing("error_from", "`error_to` needs `error_from`");
-                None
-            }
-            [] if has_bias => Some(ReadSize {
-                spread: Spread::None,
-                kind: None,
-                text: String::new(),
-                freedom: None,
-            }),
-            [] => {
-                let name = self.section.name().to_owned();
-                self.findings.push(
-                    Diagnostic::error(
-                        Code::MissingSize,
-                        self.section.span.clone(),
-                        format!("{name} states no size"),
-                    )
-                    .help(format!("one of: {}", SIZE_KEYS.join(", "))),
-                );
-                None
-            }
-            ["standard_uncertainty"] => {
-                let amount = self.amount("standard_uncertainty")?;
-                let shape = shape?.unwrap_or(Shape::Normal);
-                if matches!(shape, Shape::Trapezoidal(_) | Shape::CurvilinearTrapezoid(_)) {
-                    self.missing_half_width(&shape);
-                    return None;
-                }
-                let text = format!("standard uncertainty {}, {}", amount.text, shape.word());
-                self.shaped(shape, amount, Width::Standard, text)
-            }
-            ["expanded_uncertainty"] => self.expanded(shape?),
-            ["half_width"] => {
-                let amount = self.amount("half_width")?;
-                let Some(shape) = shape? else {
-                    self.missing_shape("half_width");
-                    return None;
-                };
-                if shape == Shape::Normal {
-                    self.normal_has_no_limits();
-                    return None;
-                }
-                self.check_inner_width(&shape, &amount)?;
-                let text = format!("half-width {}, {}", amount.text, shape.word());
-                self.shaped(shape, amount, Width::Half, text)
-            }
-            ["resolution"] => {
-                let amount = self.amount("resolution")?;
-                self.only_without_shape(&shape?, "resolution")?;
-                let text = format!("resolution {}, rectangular", amount.text);
-                self.shaped(Shape::Rectangular, amount, Width::Step, text)
-            }
-            ["error_from"] => self.limits(shape?),
-            ["observations"] => self.observed(&shape?),
-            ["table"] => self.table(&shape?),
-            [first, second, ..] => {
-                let first_span = self.section.key_span(first).unwrap_or(0..0);
-                let second_span = self.section.key_span(second).unwrap_or(0..0);
-                self.findings.push(
-                    Diagnostic::error(
-                        Code::TwoSizes,
-                        second_span,
-                        format!("the size is stated twice: `{first}` and `{second}`"),
-                    )
-                    .context(first_span, "stated here as well")
-                    .help("state the size in exactly one way"),
-                );
-                None
-            }
-            [_] => None,
-        }
-    }
-
-    fn amount(&mut self, key: &str) -> Option<Amount> {
-        let value = self.section.get(key)?;
-        let amount = size::read(key, value, self.dimension, self.findings)?;
-        let negative = amount.absolute.is_some_and(|part| part < 0.0)
-            || amount.relative.is_some_and(|part| part < 0.0);
-        if negative {
-            let title = format!("`{key}` cannot be negative: \"{}\"", amount.text);
-            self.findings.error(Code::OutsideDomain, value.span(), title);
-            return None;
-        }
-        Some(amount)
-    }
-
-    fn shaped(
-        &mut self,
-        shape: Shape,
-        amount: Amount,
-        width: impl Fn(Amount) -> Width,
-        text: String,
-    ) -> Option<ReadSize> {
-        let kind = Some(amount.kind());
-        Some(ReadSize { spread: Spread::Shape(shape, width(amount)), kind, text, freedom: None })
-    }
-
-    fn disagree(&mut self, span: Span, title: &str) {
-        self.findings.error(Code::KeysDisagree, span, title);
-    }
-
-    fn missing(&mut self, key: &str, title: &str) {
-        self.findings.push(
-            Diagnostic::error(Code::MissingKey, self.section.span.clone(), title)
-                .help(format!("add `{key}`")),
-        );
-    }
-
-    fn missing_shape(&mut self, key: &str) {
-        let span = self.section.key_span(key).unwrap_or_else(|| self.section.span.clone());
-        self.findings.push(
-            Diagnostic::error(Code::MissingShape, span, format!("`{key}` needs `shape`")).help(
-                "limits alone do not say how likely the values between them are: shape = \
-                 \"rectangular\" where nothing more is known",
-            ),
-        );
-    }
-
-    fn missing_half_width(&mut self, shape: &Shape) {
-        let title = format!("a {} shape needs `half_width`", shape.word());
-        self.missing("half_width", &title);
-    }
-
-    fn normal_has_no_limits(&mut self) {
-        let span = self.section.key_span("shape").unwrap_or(0..0);
-        self.findings.push(
-            Diagnostic::error(Code::KeysDisagree, span, "a normal distribution has no half-width")
-                .help("state standard_uncertainty, or expanded_uncertainty with coverage_factor"),
-        );
-    }
-
-    fn only_without_shape(&mut self, shape: &Option<Shape>, key: &str) -> Option<()> {
-        if shape.is_some() {
-            let span = self.section.key_span("shape").unwrap_or(0..0);
-            self.disagree(span, &format!("`{key}` has a shape of its own: leave `shape` out"));
-            return None;
-        }
-        Some(())
-    }
-
-    /// The shape; the outer `None` for a fault, the inner one where none is stated.
-    #[allow(clippy::option_option, reason = "a fault and an absent key are different things")]
-    fn read_shape(&mut self, stated: &[&str]) -> Option<Option<Shape>> {
-        let flat = self.section.get("flat_half_width").is_some();
-        let limit = self.section.get("limit_half_width").is_some();
-        let word = self.section.text("shape", self.findings);
-        if word.is_none() && self.section.get("shape").is_some() {
-            return None;
-        }
-        let shape = match &word {
-            None => None,
-            Some((word, span)) => match word.as_str() {
-                "normal" => Some(Shape::Normal),
-                "rectangular" => Some(Shape::Rectangular),
-                "triangular" => Some(Shape::Triangular),
-                "arcsine" => Some(Shape::Arcsine),
-                "trapezoidal" if flat => Some(Shape::Trapezoidal(self.amount("flat_half_width")?)),
-                "curvilinear-trapezoid" if limit => {
-                    Some(Shape::CurvilinearTrapezoid(self.amount("limit_half_width")?))
-                }
-                "trapezoidal" => {
-                    self.missing("flat_half_width", "a trapezoidal shape needs `flat_half_width`");
-                    return None;
-                }
-                "curvilinear-trapezoid" => {
-                    let title = "a curvilinear-trapezoid shape needs `limit_half_width`";
-                    self.missing("limit_half_width", title);
-                    return None;
-                }
-                other => {
-                    unknown_word("shape", other, &Shape::WORDS, span.clone(), self.findings);
-                    return None;
-                }
-            },
-        };
-        let belongs = |key: &str, there: bool, fits: bool| {
-            there && !fits && stated.len() == 1 && !key.is_empty()
-        };
-        let is_flat = matches!(shape, Some(Shape::Trapezoidal(_)));
-        let is_limit = matches!(shape, Some(Shape::CurvilinearTrapezoid(_)));
-        for (key, there, fits, owner) in [
-            ("flat_half_width", flat, is_flat, "trapezoidal"),
-            ("limit_half_width", limit, is_limit, "curvilinear-trapezoid"),
-        ] {
-            if belongs(key, there, fits) {
-                let span = self.section.key_span(key).unwrap_or(0..0);
-                self.disagree(span, &format!("`{key}` belongs to the shape `{owner}`"));
-                return None;
-            }
-        }
-        Some(shape)
-    }
-
-    /// The inner width of a trapezoid lies inside the outer one, and is stated in the same way.
-    fn check_inner_width(&mut self, shape: &Shape, outer: &Amount) -> Option<()> {
-        let (key, inner) = match shape {
-            Shape::Trapezoidal(inner) => ("flat_half_width", inner),
-            Shape::CurvilinearTrapezoid(inner) => ("limit_half_width", inner),
-            _ => return Some(()),
-        };
-        let fits = inner.kind() == outer.kind()
-            && outer.kind() != Size::Mixed
-            && inner.at(1.0) <= outer.at(1.0);
-        if fits {
-            return Some(());
-        }
-        let span = self.section.key_span(key).unwrap_or(0..0);
-        self.disagree(
-            span,
-            &format!("`{key}` is not above `half_width`, and both are lengths or both are in %"),
-        );
-        None
-    }
-
-    fn expanded(&mut self, shape: Option<Shape>) -> Option<ReadSize> {
-        let amount = self.amount("expanded_uncertainty")?;
-        if shape.is_some_and(|shape| shape != Shape::Normal) {
-            let span = self.section.key_span("shape").unwrap_or(0..0);
-            self.disagree(span, "an expanded uncertainty belongs to a normal distribution");
-            return None;
-        }
-        let factor = self.section.get("coverage_factor");
-        let coverage = self.section.get("coverage");
-        let (k, words) = match (factor, coverage) {
-            (Some(value), None) => match number(value.get_ref()) {
-                Some(k) if (0.1..=10.0).contains(&k) => (k, format!("k = {k}")),
-                _ => {
-                    let title = "`coverage_factor` is a number such as 2";
-                    self.findings.error(Code::OutsideDomain, value.span(), title);
-                    return None;
-                }
-            },
-            (None, Some(value)) => {
-                let probability = read_probability("coverage", value, self.findings)?;
-                let freedom =
-                    self.freedom.map_or(DegreesOfFreedom::Infinite, DegreesOfFreedom::Finite);
-                let k = Coverage::Probability(probability).factor(freedom);
-                (k, format!("{} %", round_to(probability * 100.0)))
-            }
-            (Some(_), Some(second)) => {
-                let title = "`coverage_factor` and `coverage` exclude each other";
-                self.findings.error(Code::KeysDisagree, second.span(), title);
-                return None;
-            }
-            (None, None) => {
-                let title = "`expanded_uncertainty` needs `coverage_factor` or `coverage`";
-                self.missing("coverage_factor", title);
-                return None;
-            }
-        };
-        let text = format!("expanded uncertainty {}, {words}", amount.text);
-        self.shaped(Shape::Normal, amount, |amount| Width::Expanded(amount, k), text)
-    }
-
-    fn limits(&mut self, shape: Option<Shape>) -> Option<ReadSize> {
-        let from_value = self.section.get("error_from")?;
-        let Some(to_value) = self.section.get("error_to") else {
-            self.missing("error_to", "`error_from` needs `error_to`");
-            return None;
-        };
-        let from = size::read("error_from", from_value, self.dimension, self.findings)?;
-        let to = size::read("error_to", to_value, self.dimension, self.findings)?;
-        let shape = shape.unwrap_or(Shape::Rectangular);
-        if shape == Shape::Normal {
-            self.normal_has_no_limits();
-            return None;
-        }
-        if from.kind() != to.kind() || from.kind() == Size::Mixed {
-            self.disagree(to_value.span(), "`error_from` and `error_to` are in units of one kind");
-            return None;
-        }
-        if from.at(1.0) > to.at(1.0) {
-            self.findings.push(
-                Diagnostic::error(
-                    Code::RangeReversed,
-                    to_value.span(),
-                    format!("the error runs from {} down to {}", from.text, to.text),
-                )
-                .context(from_value.span(), "from here")
-                .help("the smaller error comes first"),
-            );
-            return None;
-        }
-        let half = Amount {
-            absolute: from.absolute.zip(to.absolute).map(|(a, b)| (b - a) / 2.0),
-            relative: from.relative.zip(to.relative).map(|(a, b)| (b - a) / 2.0),
-            text: String::new(),
-        };
-        self.check_inner_width(&shape, &half)?;
-        let text = format!("error from {} to {}, {}", from.text, to.text, shape.word());
-        let kind = Some(from.kind());
-        Some(ReadSize { spread: Spread::Limits(shape, from, to), kind, text, freedom: None })
-    }
-
-    fn observed(&mut self, shape: &Option<Shape>) -> Option<ReadSize> {
-        self.only_without_shape(shape, "observations")?;
-        let value = self.section.get("observations")?;
-        let (observed, first) = self.list_of_errors("observations", value)?;
-        let count = observed.len() as f64;
-        let s = standard_deviation(&observed);
-        let redrawn = self.fixed_until.unwrap_or(FixedUntil::Survey).is_redrawn();
-        let scale = if redrawn { s * (1.0 + 1.0 / count).sqrt() } else { s / count.sqrt() };
-        let text = format!("{} observations", observed.len());
-        let spread = Spread::Observed { mean: mean(&observed), scale };
-        Some(ReadSize { spread, kind: Some(first), text, freedom: Some(count - 1.0) })
-    }
-
-    /// Observed errors in the unit of the input, or all in per cent.
-    fn list_of_errors(
-        &mut self,
-        key: &str,
-        value: &'a Spanned<DeValue<'i>>,
-    ) -> Option<(Vec<f64>, Size)> {
-        let in_per_cent =
-            value.get_ref().as_array().and_then(|items| items.first()).is_some_and(|item| {
-                item.get_ref().as_str().is_some_and(|text| text.trim_end().ends_with('%'))
-            });
-        let (dimension, kind) = if in_per_cent {
-            (Some(Dimension::NONE), Size::Scale)
-        } else {
-            (self.dimension, Size::Shift)
-        };
-        let (observed, _) = read_observations(key, value, dimension, self.findings)?;
-        Some((observed, kind))
-    }
-
-    fn table(&mut self, shape: &Option<Shape>) -> Option<ReadSize> {
-        self.only_without_shape(shape, "table")?;
-        let value = self.section.get("table")?;
-        let DeValue::Array(rows) = value.get_ref() else {
-            let title = format!("`table` is a list of pairs, not {}", article(value.get_ref()));
-            self.findings.error(Code::WrongType, value.span(), title);
-            return None;
-        };
-        let mut amounts = Vec::new();
-        let mut weights = Vec::new();
-        for row in rows.iter() {
-            let pair = row.get_ref().as_array().filter(|pair| pair.len() == 2);
-            let weight = pair.and_then(|pair| number(pair[1].get_ref())).filter(|w| *w >= 0.0);
-            let (Some(pair), Some(weight)) = (pair, weight) else {
-                self.findings.push(
-                    Diagnostic::error(
-                        Code::WrongType,
-                        row.span(),
-                        "a row of `table` is an error and its weight",
-                    )
-                    .help("for example table = [[\"0 mm\", 3], [\"2 mm\", 1]]"),
-                );
-                return None;
-            };
-            amounts.push(size::read("table", &pair[0], self.dimension, self.findings)?);
-            weights.push(weight);
-        }
-        let sum: f64 = weights.iter().sum();
-        let kind = amounts.first().map(Amount::kind);
-        let one_kind = amounts.iter().all(|amount| Some(amount.kind()) == kind);
-        if !(sum > 0.0 && sum.is_finite()) || !one_kind || kind == Some(Size::Mixed) {
-            let title = "`table` needs rows of one kind, and weights that do not add up to 0";
-            self.findings.error(Code::OutsideDomain, value.span(), title);
-            return None;
-        }
-        let errors: Vec<f64> = amounts.iter().map(|amount| amount.at(1.0)).collect();
-        let probabilities = weights.iter().map(|weight| weight / sum).collect();
-        let text = format!("table of {} errors", errors.len());
-        Some(ReadSize { spread: Spread::Table(errors, probabilities), kind, text, freedom: None })
-    }
-}
-
-/// A coverage probability: `"95 %"`.
-pub(super) fn read_probability(
-    key: &str,
-    value: &Spanned<DeValue<'_>>,
-    findings: &mut Findings<'_>,
-) -> Option<f64> {
-    let text = string(key, value, findings)?;
-    let probability = Quantity::parse(&text)
-        .ok()
-        .filter(|quantity| quantity.dimension().is_none())
-        .map(|quantity| quantity.value)
-        .filter(|p| (0.5..=0.9999).contains(p));
-    if probability.is_none() {
-        let title = format!("`{key}` is a probability from 50 % to 99.99 %, such as \"95 %\"");
-        findings.error(Code::OutsideDomain, value.span(), title);
-    }
-    probability
 }

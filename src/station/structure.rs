@@ -104,14 +104,11 @@ fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Finding
     let shown: String = kind.chars().take(60).collect();
     let title = format!("`{shown}` is no kind of structure that nappe knows");
     let mut diagnostic = Diagnostic::error(Code::UnknownWord, value.span(), title);
-    diagnostic = match nearest(kind, kinds.clone()) {
-        Some(near) => diagnostic
-            .help(format!("the nearest is `{near}`"))
-            .fix(value.span(), format!("\"{near}\"")),
-        None => {
-            let list: Vec<&str> = kinds.collect();
-            diagnostic.help(format!("kinds: {}", list.join(", ")))
-        }
+    diagnostic = if let Some(near) = nearest(kind, kinds.clone()) {
+        diagnostic.help(format!("the nearest is `{near}`")).fix(value.span(), format!("\"{near}\""))
+    } else {
+        let list: Vec<&str> = kinds.collect();
+        diagnostic.help(format!("kinds: {}", list.join(", ")))
     };
     findings.push(diagnostic);
 }
@@ -136,12 +133,11 @@ pub(super) fn read_input(
     spec: &InputSpec,
     findings: &mut Findings<'_>,
 ) -> Option<StationInput> {
-    let value = match spec.default {
-        Some(_) => section.get(spec.key),
-        None => {
-            let help = format!("{}; for example {} = \"{}\"", spec.meaning, spec.key, spec.example);
-            Some(section.need(spec.key, &help, findings)?)
-        }
+    let value = if spec.default.is_some() {
+        section.get(spec.key)
+    } else {
+        let help = format!("{}; for example {} = \"{}\"", spec.meaning, spec.key, spec.example);
+        Some(section.need(spec.key, &help, findings)?)
     };
     let Some(value) = value else { return Some(input_without_value(spec)) };
     let mut input = read_value(spec.key, value, Some(spec.dimension), findings)?;

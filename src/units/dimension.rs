@@ -158,13 +158,13 @@ impl fmt::Display for Dimension {
             .filter(|(exponent, _)| exponent.numerator() > 0)
             .map(factor)
             .collect();
-        let below: String = self
-            .exponents
-            .into_iter()
-            .zip(BASE)
-            .filter(|(exponent, _)| exponent.is_negative())
-            .map(|(exponent, symbol)| format!("/{}", factor((exponent.negated(), symbol))))
-            .collect();
+        let mut below = String::new();
+        for (exponent, symbol) in self.exponents.into_iter().zip(BASE) {
+            if exponent.is_negative() {
+                below += "/";
+                below += &factor((exponent.negated(), symbol));
+            }
+        }
         let above = if above.is_empty() { "1".to_owned() } else { above.join(" ") };
         write!(f, "{above}{below}")
     }

@@ -11,6 +11,9 @@ pub struct Rational {
     denominator: i64,
 }
 
+/// Decimals of at most nine places are written as such.
+const NINE_PLACES: i64 = 1_000_000_000;
+
 impl Rational {
     /// Zero.
     pub const ZERO: Self = Self::whole(0);
@@ -41,10 +44,11 @@ impl Rational {
         })
     }
 
-    /// The exact value of a decimal literal such as `1.522`; `None` beyond nine decimals.
+    /// The exact value of a decimal literal such as `1.522`; `None` beyond nine decimals, or where it
+    /// does not fit.
     pub fn from_decimal(text: &str) -> Option<Self> {
         let (whole, fraction) = text.split_once('.').unwrap_or((text, ""));
-        if whole.len() > 9 || fraction.len() > 9 || (whole.is_empty() && fraction.is_empty()) {
+        if whole.len() > 19 || fraction.len() > 9 || (whole.is_empty() && fraction.is_empty()) {
             return None;
         }
         let digits = format!("{whole}{fraction}");
@@ -125,8 +129,14 @@ impl fmt::Display for Rational {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         if self.denominator == 1 {
             write!(f, "{}", self.numerator)
-        } else if 1_000_000_000 % self.denominator == 0 {
-            write!(f, "{}", self.value())
+        } else if NINE_PLACES % self.denominator == 0 {
+            // In whole numbers, so that every digit is exact.
+            let scaled = i128::from(self.numerator) * i128::from(NINE_PLACES / self.denominator);
+            let sign = if scaled < 0 { "-" } else { "" };
+            let (whole, part) =
+                (scaled.abs() / i128::from(NINE_PLACES), scaled.abs() % i128::from(NINE_PLACES));
+            let digits = format!("{part:09}");
+            write!(f, "{sign}{whole}.{}", digits.trim_end_matches('0'))
         } else {
             write!(f, "{}/{}", self.numerator, self.denominator)
         }

@@ -271,11 +271,14 @@ impl Graph {
 
     /// A sum: flat, like terms collected, zero terms gone.
     pub fn sum(&mut self, terms: impl IntoIterator<Item = Id>) -> Id {
-        let mut constant = Number::ZERO;
-        let mut collected: BTreeMap<Id, Number> = BTreeMap::new();
         let mut waiting: Vec<(Number, Id)> =
             terms.into_iter().map(|term| (Number::ONE, term)).collect();
+        if let [(_, only)] = waiting.as_slice() {
+            return *only;
+        }
         waiting.reverse();
+        let mut constant = Number::ZERO;
+        let mut collected: BTreeMap<Id, Number> = BTreeMap::new();
         while let Some((factor, term)) = waiting.pop() {
             let (coefficient, core) = self.split_coefficient(term);
             let coefficient = factor.times(coefficient);

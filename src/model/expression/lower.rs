@@ -101,12 +101,11 @@ impl Lowering<'_> {
             }
             TreeKind::Power(parts) => {
                 let base = self.lower(&parts[0]);
-                match exact_value(&parts[1]) {
-                    Some(exact) => self.graph.power(base, exact),
-                    None => {
-                        let exponent = self.lower(&parts[1]);
-                        self.graph.power_of(base, exponent)
-                    }
+                if let Some(exact) = exact_value(&parts[1]) {
+                    self.graph.power(base, exact)
+                } else {
+                    let exponent = self.lower(&parts[1]);
+                    self.graph.power_of(base, exponent)
                 }
             }
             TreeKind::Call(name, arguments) => self.call(name, arguments, &tree.span),

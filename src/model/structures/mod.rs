@@ -280,7 +280,7 @@ const WIDTH_ADJUSTMENT: InputSpec = InputSpec {
     ..HEAD_ADJUSTMENT
 };
 
-/// The published uncertainty of k_h of thin plates.
+/// The published uncertainty of `k_h` of thin plates.
 const PUBLISHED_HEAD_ADJUSTMENT: Adjustment = Adjustment {
     name: "published head adjustment",
     acts_on: "head_adjustment",

@@ -24,7 +24,7 @@ pub fn intervals(values: &mut [f64], probability: f64) -> Option<Intervals> {
     let inside = wanted.clamp(1, count - 1);
     let outside = count - inside;
     let (lower, upper) = tails(values, outside);
-    let symmetric = if outside % 2 == 0 { outside / 2 } else { outside.div_ceil(2) };
+    let symmetric = if outside.is_multiple_of(2) { outside / 2 } else { outside.div_ceil(2) };
     let length = |r: &usize| upper[*r] - lower[*r];
     let shortest = (0..outside).min_by(|a, b| length(a).total_cmp(&length(b))).unwrap_or(0);
     let at = |r: usize| [lower[r], upper[r]];

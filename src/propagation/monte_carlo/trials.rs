@@ -116,13 +116,14 @@ impl<'p> Sampler<'p> {
         for (i, row) in rows.iter().enumerate().rev() {
             let distribution = &self.problem.sources[group[i]].distribution;
             let (mean, u) = (distribution.mean(), distribution.standard_uncertainty());
-            for lane in 0..BLOCK {
-                let z: f64 = row
-                    .iter()
-                    .zip(group)
-                    .map(|(weight, source)| weight * errors[*source][lane])
-                    .sum();
-                errors[group[i]][lane] = mean + u * z;
+            let mut combined = [0.0; BLOCK];
+            for (weight, source) in row.iter().zip(group) {
+                for (sum, z) in combined.iter_mut().zip(errors[*source].iter()) {
+                    *sum += weight * z;
+                }
+            }
+            for (error, z) in errors[group[i]].iter_mut().zip(combined) {
+                *error = mean + u * z;
             }
         }
     }
