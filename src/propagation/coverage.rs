@@ -40,7 +40,9 @@ impl Coverage {
         let upper = f64::midpoint(1.0, probability);
         let z = standard_normal().inverse_cdf(upper);
         match degrees_of_freedom {
-            DegreesOfFreedom::Finite(freedom) if freedom > NEARLY_NORMAL => nearly_normal(z, freedom),
+            DegreesOfFreedom::Finite(freedom) if freedom > NEARLY_NORMAL => {
+                nearly_normal(z, freedom)
+            }
             DegreesOfFreedom::Finite(freedom) => match StudentsT::new(0.0, 1.0, freedom) {
                 Ok(t) => t.inverse_cdf(upper),
                 Err(_) => f64::NAN,
@@ -73,9 +75,8 @@ mod tests {
 
     #[test]
     fn any_number_of_degrees_of_freedom_has_a_factor_in_no_time() {
-        let factor = |freedom: f64| {
-            Coverage::Probability(0.95).factor(DegreesOfFreedom::Finite(freedom))
-        };
+        let factor =
+            |freedom: f64| Coverage::Probability(0.95).factor(DegreesOfFreedom::Finite(freedom));
         let mut last = f64::INFINITY;
         for exponent in 0..400 {
             let k = factor(10_f64.powf(f64::from(exponent) / 20.0));

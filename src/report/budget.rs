@@ -224,7 +224,8 @@ fn source_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
                 format!("{:>4.1} %", 100.0 * row.share_linear),
                 bar(row.share_linear),
                 source_words(row),
-                row.acts_on.join(", "),
+                // With blanks for the underscores of the keys, so that they break between words.
+                row.acts_on.join(", ").replace('_', " "),
                 row.size.clone(),
                 head,
                 row.contribution_percent

@@ -1,1 +1,52 @@
-//! (to come)
+//! Committed documents that must keep up with the program: the schema, the lists of codes, units and
+//! sources, and the README's promises.
+
+use nappe::diagnostic::Code;
+use nappe::model::source::BIBLIOGRAPHY;
+use nappe::model::structures::CATALOGUE;
+
+fn document(name: &str) -> String {
+    std::fs::read_to_string(name).unwrap_or_else(|error| panic!("{name}: {error}"))
+}
+
+#[test]
+fn the_schema_is_current() {
+    let committed = document("docs/schema/budget.json");
+    assert_eq!(
+        committed,
+        nappe::report::budget_schema(),
+        "refresh it: nappe schema > docs/schema/budget.json"
+    );
+}
+
+#[test]
+fn every_code_has_a_row_in_the_list() {
+    let list = document("docs/diagnostics.md");
+    for code in Code::ALL {
+        assert!(list.contains(&format!("`{}`", code.as_str())), "{} is missing", code.as_str());
+    }
+}
+
+#[test]
+fn every_source_is_in_the_bibliography_and_every_structure_in_the_guide() {
+    let sources = document("docs/sources.md");
+    for citation in BIBLIOGRAPHY {
+        assert!(sources.contains(citation.document), "{} is missing", citation.document);
+    }
+    let guide = document("docs/station-file.md");
+    for structure in CATALOGUE {
+        assert!(guide.contains(structure.kind), "{} is missing", structure.kind);
+        for input in structure.inputs {
+            assert!(guide.contains(input.key), "{} is missing", input.key);
+        }
+    }
+}
+
+#[test]
+fn cautions_stand_where_they_must() {
+    for name in ["README.md", "docs/methods.md"] {
+        let text = document(name).to_lowercase();
+        assert!(text.contains("never replace") || text.contains("licensed practice"), "{name}");
+    }
+    assert!(document("README.md").contains("dangerous"));
+}
