@@ -122,15 +122,20 @@ impl<'m> Compiler<'m> {
             }
             Node::Extremum(extremum, left, right) => {
                 let operands = [left, right].map(|id| self.emit(id));
-                self.never_folded(DraftKind::Extremum(extremum), &operands)
+                self.plain(DraftKind::Extremum(extremum), &operands, |v| extremum.of(v[0], v[1]))
             }
             Node::LookUp { table, at, order } => {
                 let operands = at.map(|id| self.emit(id));
-                self.never_folded(DraftKind::LookUp(table.0, order), &operands)
+                let values = self.graph().table(table).clone();
+                self.plain(DraftKind::LookUp(table.0, order), &operands, |v| {
+                    values.look_up([v[0], v[1]], order)
+                })
             }
             Node::Choose { relation, left, right, then, otherwise } => {
                 let operands = [left, right, then, otherwise].map(|id| self.emit(id));
-                self.never_folded(DraftKind::Choose(relation), &operands)
+                self.plain(DraftKind::Choose(relation), &operands, |v| {
+                    if relation.holds(v[0], v[1]) { v[2] } else { v[3] }
+                })
             }
         }
     }
@@ -214,13 +219,11 @@ impl<'m> Compiler<'m> {
             .collect();
         match constants {
             Some(values) => Value::Constant(fold(&values)),
-            None => self.never_folded(kind, operands),
+            None => {
+                let operands = operands.iter().map(|operand| self.in_register(*operand)).collect();
+                self.draft(kind, operands)
+            }
         }
-    }
-
-    fn never_folded(&mut self, kind: DraftKind, operands: &[Value]) -> Value {
-        let operands = operands.iter().map(|operand| self.in_register(*operand)).collect();
-        self.draft(kind, operands)
     }
 
     /// Positive terms added, then the others subtracted.

@@ -17,13 +17,13 @@ pub enum Confidence {
 }
 
 impl Confidence {
-    /// In words, for reports.
+    /// In words, for reports, which explain "from memory" in a line of their own.
     pub fn words(self) -> &'static str {
         match self {
             Self::Seen => "seen in the source",
             Self::MemoryConfirmed => "from memory, confirmed by a second route",
-            Self::Memory => "from memory, confirm against your copy of the standard",
-            Self::Doubtful => "doubtful, do not rely on it without the standard",
+            Self::Memory => "from memory",
+            Self::Doubtful => "from memory, doubtful",
         }
     }
 

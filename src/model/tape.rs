@@ -129,12 +129,8 @@ impl Registers {
             Operation::Power(a, exponent) => unary(to, read(a), |a| a.powf(*exponent)),
             Operation::PowerOf(a, b) => binary(to, read(a), read(b), f64::powf),
             Operation::Apply(function, a) => unary(to, read(a), |a| function.value(a)),
-            // f64::min and max would drop a NaN; these keep it.
-            Operation::Extremum(Extremum::Min, a, b) => {
-                binary(to, read(a), read(b), |a, b| if b < a || b.is_nan() { b } else { a });
-            }
-            Operation::Extremum(Extremum::Max, a, b) => {
-                binary(to, read(a), read(b), |a, b| if b > a || b.is_nan() { b } else { a });
+            Operation::Extremum(extremum, a, b) => {
+                binary(to, read(a), read(b), |a, b| extremum.of(a, b));
             }
             Operation::LookUp { table, at, order } => {
                 let table = &tables[*table as usize];

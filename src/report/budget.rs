@@ -2,7 +2,7 @@
 
 use super::document::Document;
 use super::rounding::rounded;
-use super::{CAUTION, UnitSystem};
+use super::{CAUTION, FROM_MEMORY, UnitSystem};
 use crate::propagation::{Coverage, DegreesOfFreedom};
 use crate::station::Evidence;
 use crate::study::{Budget, BudgetRow, Correction, InputRow};
@@ -38,6 +38,9 @@ pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
     input_table(&mut page, budget);
     page.lines(budget.equations.iter().map(|(name, text)| format!("{name} = {text}")));
     limit_table(&mut page, budget);
+    if budget.rows.iter().any(|row| row.published.is_some()) || !budget.limits.is_empty() {
+        page.paragraph(FROM_MEMORY);
+    }
     page.paragraph(how_computed(budget));
     page.paragraph(CAUTION);
     page
@@ -298,14 +301,13 @@ fn retrace_table(page: &mut Document, budget: &Budget) {
             } else {
                 "infinite".to_owned()
             };
-            let unit = &row.unit;
             let mut cells = vec![
                 row.rank.to_string(),
                 row.name.clone(),
-                format!("{} {unit}", significant(row.standard_uncertainty, 5)),
+                with_unit(significant(row.standard_uncertainty, 5), &row.unit),
                 freedom,
                 significant(row.sensitivity, 5),
-                format!("{} {}", significant(row.contribution, 5), budget.result.unit),
+                significant(row.contribution, 5),
                 format!("{:.4}", row.share_linear),
             ];
             if let Some(share) = row.share {
@@ -316,13 +318,14 @@ fn retrace_table(page: &mut Document, budget: &Budget) {
             cells
         })
         .collect();
+    let contribution = format!("#contribution [{}]", budget.result.unit);
     let mut columns = vec![
         "#rank",
         "source",
         "#standard uncertainty",
         "#degrees of freedom",
         "#sensitivity",
-        "#contribution",
+        &contribution,
         "#share",
     ];
     if monte_carlo {
@@ -330,6 +333,11 @@ fn retrace_table(page: &mut Document, budget: &Budget) {
     }
     columns.push("basis");
     page.table(&columns, rows);
+}
+
+/// A number with its SI unit; a pure number has none.
+fn with_unit(number: String, unit: &str) -> String {
+    if unit == "1" { number } else { format!("{number} {unit}") }
 }
 
 /// What stands behind a row: a publication, or the station's evidence.
@@ -356,7 +364,7 @@ fn input_table(page: &mut Document, budget: &Budget) {
         .iter()
         .map(|InputRow { key, symbol, stated, indicated, corrected, unit, evidence }| {
             let number = |value: &Option<f64>| match value {
-                Some(value) => format!("{} {unit}", significant(*value, 6)),
+                Some(value) => with_unit(significant(*value, 6), unit),
                 None => "left out".to_owned(),
             };
             let stated = match (stated.as_str(), key.as_str()) {
@@ -386,12 +394,11 @@ fn limit_table(page: &mut Document, budget: &Budget) {
         .limits
         .iter()
         .map(|limit| {
-            let unit = if limit.unit == "1" { String::new() } else { format!(" {}", limit.unit) };
             vec![
                 limit.quantity.clone(),
                 limit.meaning.clone(),
-                format!("{}{unit}", significant(limit.value, 4)),
-                format!("{} {}{unit}", limit.sign, significant(limit.bound, 4)),
+                with_unit(significant(limit.value, 4), &limit.unit),
+                format!("{} {}", limit.sign, with_unit(significant(limit.bound, 4), &limit.unit)),
                 if limit.kept { "kept".to_owned() } else { "NOT KEPT".to_owned() },
                 format!("{}, {}", limit.standard, limit.confidence),
             ]

@@ -25,6 +25,10 @@ pub use sheet::{catalogue_document, sheet_document};
 pub use text::text;
 pub use unit_system::UnitSystem;
 
+/// What marks of memory mean, on every page that has them.
+const FROM_MEMORY: &str = "\"From memory\": quoted without the document in hand; confirm against your copy of \
+                           the standard. \"Doubtful\": do not rely on it without the standard.";
+
 /// What every report says at its end.
 pub const CAUTION: &str = "Results support, and never replace, local codes, the permit and licensed \
                            practice. Work in and beside water is dangerous.";

@@ -1,5 +1,6 @@
 //! The sheet of a structure, and the list of all, as pages.
 
+use super::FROM_MEMORY;
 use super::document::Document;
 use crate::study::{NumberLine, RegimeSheet, Sheet, TableSheet};
 use crate::units::significant;
@@ -20,6 +21,7 @@ pub fn sheet_document(sheet: &Sheet) -> Document {
     }
     page.heading("Published numbers");
     page.table(NUMBER_COLUMNS, sheet.numbers.iter().map(number_row).collect());
+    page.paragraph(FROM_MEMORY);
     for table in &sheet.tables {
         table_part(&mut page, table);
     }

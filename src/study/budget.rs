@@ -332,8 +332,10 @@ fn equations(setting: &Setting) -> Vec<(String, String)> {
         (unknown.name.clone(), format!("root of 0 = {}", model.text(unknown.residual)))
     });
     // The result first, then what it is made of.
-    let definitions = model.definitions().iter().rev();
+    let mut definitions: Vec<_> = model.definitions().iter().rev().collect();
+    definitions.sort_by_key(|each| each.name != model.result_name());
     definitions
+        .into_iter()
         .map(|each| (each.name.clone(), model.text_of_definition(each.id)))
         .chain(unknowns)
         .collect()

@@ -140,6 +140,19 @@ pub enum Extremum {
     Max,
 }
 
+impl Extremum {
+    /// The smaller or larger of two; NaN if either is.
+    #[inline]
+    pub fn of(self, a: f64, b: f64) -> f64 {
+        // f64::min and max would drop a NaN; these keep it.
+        let second = match self {
+            Self::Min => b < a,
+            Self::Max => b > a,
+        };
+        if second || b.is_nan() { b } else { a }
+    }
+}
+
 /// How two values are compared.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Relation {

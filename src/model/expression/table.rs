@@ -55,7 +55,8 @@ impl Axis {
         if at > self.0[last] {
             return Place { index: last - 1, share: 1.0, per_width: 0.0 };
         }
-        let index = self.0.partition_point(|node| *node <= at).clamp(1, last) - 1;
+        // Counting has no branches to mispredict: published tables have few nodes.
+        let index = self.0[1..last].iter().filter(|node| **node <= at).count();
         let width = self.0[index + 1] - self.0[index];
         Place { index, share: (at - self.0[index]) / width, per_width: 1.0 / width }
     }
@@ -108,8 +109,13 @@ impl Table {
         if !(at[0].is_finite() && at[1].is_finite()) {
             return f64::NAN;
         }
-        let (first, second) = (self.first.place(at[0]), self.second.place(at[1]));
+        let first = self.first.place(at[0]);
         let columns = self.second.0.len();
+        if columns == 1 {
+            let last = self.values.len() - 1;
+            return along(first, order[0], |i| self.values[i.min(last)]);
+        }
+        let second = self.second.place(at[1]);
         let row = |index: usize| {
             let values = &self.values[index * columns..(index + 1) * columns];
             along(second, order[1], |j| values[j.min(columns - 1)])
