@@ -1,9 +1,9 @@
 //! How long the Monte Carlo method and what surrounds it take.
 //!
 //! ```text
-//! cargo bench                       # all of them
-//! cargo bench -- million            # those with that word in their name
-//! python benches/compare.py         # whole runs beside the same model in numpy
+//! cargo bench --bench weir              # all of them
+//! cargo bench --bench weir -- million   # those with that word in their name
+//! python benches/compare.py             # whole runs beside the same model in numpy
 //! ```
 //!
 //! | bench | what it measures |
@@ -34,20 +34,26 @@ const FLUME_HEAD: f64 = 0.3;
 const TRIALS: u64 = 1_000_000;
 const SEED: u64 = 1;
 
-/// Threads of a pool; 0 stands for as many as there are cores.
-const THREADS: [usize; 2] = [1, 0];
+/// How many threads share the trials.
+#[derive(Clone, Copy, Debug)]
+enum Threads {
+    One,
+    All,
+}
+
+const THREADS: [Threads; 2] = [Threads::One, Threads::All];
 
 fn main() {
     divan::main();
 }
 
 #[divan::bench(args = THREADS, sample_count = 20)]
-fn million_trials(bencher: Bencher<'_, '_>, threads: usize) {
+fn million_trials(bencher: Bencher<'_, '_>, threads: Threads) {
     in_pool(bencher, threads, || trials(WEIR, WEIR_HEAD));
 }
 
 #[divan::bench(args = THREADS, sample_count = 10)]
-fn million_flume_trials(bencher: Bencher<'_, '_>, threads: usize) {
+fn million_flume_trials(bencher: Bencher<'_, '_>, threads: Threads) {
     in_pool(bencher, threads, || trials(FLUME, FLUME_HEAD));
 }
 
@@ -114,8 +120,13 @@ fn trials(file: &[u8], head: f64) -> MonteCarlo {
         .expect("nearly all trials have a value")
 }
 
-fn in_pool(bencher: Bencher<'_, '_>, threads: usize, run: impl Fn() -> MonteCarlo + Sync) {
-    let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build();
+fn in_pool(bencher: Bencher<'_, '_>, threads: Threads, run: impl Fn() -> MonteCarlo + Sync) {
+    let count = match threads {
+        Threads::One => 1,
+        // rayon's word for as many as there are cores.
+        Threads::All => 0,
+    };
+    let pool = rayon::ThreadPoolBuilder::new().num_threads(count).build();
     let pool = pool.expect("threads can be started");
     bencher.counter(ItemsCount::new(TRIALS)).bench(|| pool.install(&run));
 }

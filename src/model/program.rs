@@ -73,28 +73,55 @@ impl Program {
         Some(&mut workspace.registers.lanes[register as usize][..])
     }
 
-    /// Runs the first `lanes` lanes of a block and tells what became of each.
-    pub fn run(&self, workspace: &mut Workspace, lanes: usize, outcomes: &mut [Outcome; BLOCK]) {
+    /// Runs the first `lanes` lanes of a block and tells what became of each. True if all are plain
+    /// values, which the caller then need not look at one by one.
+    pub fn run(
+        &self,
+        workspace: &mut Workspace,
+        lanes: usize,
+        outcomes: &mut [Outcome; BLOCK],
+    ) -> bool {
         let registers = &mut workspace.registers;
         registers.outside[..lanes].fill(false);
         registers.run(&self.steps, &self.tables, &(0..lanes), true);
+        if self.all_plain(registers, lanes) {
+            outcomes[..lanes].fill(Outcome::Value);
+            return true;
+        }
         for (lane, outcome) in outcomes[..lanes].iter_mut().enumerate() {
-            let at = |register: Register| registers.lanes[register as usize][lane];
-            let dry = self.flowing.is_some_and(|register| at(register) <= 0.0);
-            let outside =
-                registers.outside[lane] || self.beyond.is_some_and(|register| at(register) > 0.0);
-            let defined = self.outputs.iter().all(|register| at(*register).is_finite());
-            *outcome = match (dry, defined) {
-                (true, _) => Outcome::Dry,
-                (false, false) => Outcome::Undefined,
-                (false, true) if outside => Outcome::OutsideTable,
-                (false, true) => Outcome::Value,
-            };
-            if dry {
+            *outcome = self.outcome(registers, lane);
+            if *outcome == Outcome::Dry {
                 for register in &self.outputs {
                     registers.lanes[*register as usize][lane] = 0.0;
                 }
             }
+        }
+        false
+    }
+
+    /// Whether water flows, no table is left and the outputs are finite, in all lanes. Without branches
+    /// inside, so that it costs next to nothing.
+    fn all_plain(&self, registers: &Registers, lanes: usize) -> bool {
+        let all = |register: Register, holds: fn(f64) -> bool| {
+            registers.lanes[register as usize][..lanes].iter().fold(true, |all, x| all & holds(*x))
+        };
+        self.flowing.is_none_or(|register| all(register, |x| x > 0.0))
+            && self.beyond.is_none_or(|register| all(register, |x| x <= 0.0))
+            && !registers.outside[..lanes].contains(&true)
+            && self.outputs.iter().all(|register| all(*register, f64::is_finite))
+    }
+
+    fn outcome(&self, registers: &Registers, lane: usize) -> Outcome {
+        let at = |register: Register| registers.lanes[register as usize][lane];
+        let dry = self.flowing.is_some_and(|register| at(register) <= 0.0);
+        let outside =
+            registers.outside[lane] || self.beyond.is_some_and(|register| at(register) > 0.0);
+        let defined = self.outputs.iter().all(|register| at(*register).is_finite());
+        match (dry, defined) {
+            (true, _) => Outcome::Dry,
+            (false, false) => Outcome::Undefined,
+            (false, true) if outside => Outcome::OutsideTable,
+            (false, true) => Outcome::Value,
         }
     }
 

@@ -20,6 +20,9 @@ pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
     verdict(&mut page, budget, units);
     page.heading("Sources of uncertainty, ranked");
     source_table(&mut page, budget, units);
+    page.paragraph(
+        "Share: of the variance, by the linear method. Of head, and of the result: standard uncertainty.",
+    );
     if !budget.corrections.is_empty() {
         page.heading("Known biases taken out");
         correction_table(&mut page, budget);
@@ -237,8 +240,8 @@ fn source_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
             ]
         })
         .collect();
-    let head = format!("#u of head [{unit}]");
-    let of_flow = format!("#u of {} [%]", budget.result.name);
+    let head = format!("#{unit} of head");
+    let of_flow = format!("#% of {}", budget.result.name);
     page.table(
         &[
             "#rank",

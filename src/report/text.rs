@@ -2,7 +2,7 @@
 
 use anstyle::{AnsiColor, Style};
 use comfy_table::{Cell, CellAlignment, ContentArrangement, Table};
-use comfy_table::{LineStyle, presets};
+use comfy_table::{ColumnConstraint, LineStyle, Width, presets};
 
 use super::document::{Block, Document};
 
@@ -48,6 +48,9 @@ pub fn text(document: &Document, width: u16) -> String {
     out
 }
 
+/// Longer words may be broken.
+const LONGEST_WHOLE_WORD: usize = 14;
+
 fn table(columns: &[(String, bool)], rows: &[Vec<String>], width: u16) -> String {
     let mut table = Table::new();
     table
@@ -61,6 +64,14 @@ fn table(columns: &[(String, bool)], rows: &[Vec<String>], width: u16) -> String
             Cell::new(cell).set_alignment(alignment)
         });
         table.add_row(cells);
+    }
+    // No word is broken that a column can hold; the two blanks are the cell's own.
+    for (index, column) in table.column_iter_mut().enumerate() {
+        let cells = rows.iter().filter_map(|row| row.get(index));
+        let words = cells.chain([&columns[index].0]).flat_map(|cell| cell.split_whitespace());
+        let longest = words.map(|word| word.chars().count()).max().unwrap_or(0);
+        let width = longest.min(LONGEST_WHOLE_WORD) as u16 + 2;
+        column.set_constraint(ColumnConstraint::LowerBoundary(Width::Fixed(width)));
     }
     table.to_string().lines().map(str::trim_end).collect::<Vec<_>>().join("\n")
 }

@@ -241,14 +241,18 @@ fn super_block(
         let lanes = BLOCK.min(count - start);
         sampler.draw(&mut streams, errors);
         sampler.fill_inputs(program, workspace, |source| &errors[source]);
-        program.run(workspace, lanes, &mut outcomes);
-        tally.count(&outcomes[..lanes]);
+        let plain = program.run(workspace, lanes, &mut outcomes);
+        if !plain {
+            tally.count(&outcomes[..lanes]);
+        }
         for (output, slice) in slices.iter_mut().enumerate() {
             let lanes_of = program.output(workspace, output);
             slice[start..start + lanes].copy_from_slice(&lanes_of[..lanes]);
-            for (value, outcome) in slice[start..].iter_mut().zip(&outcomes[..lanes]) {
-                if *outcome == Outcome::Undefined {
-                    *value = f64::NAN;
+            if !plain {
+                for (value, outcome) in slice[start..].iter_mut().zip(&outcomes[..lanes]) {
+                    if *outcome == Outcome::Undefined {
+                        *value = f64::NAN;
+                    }
                 }
             }
         }
