@@ -53,6 +53,8 @@ codes! {
     NotText = "not_text",
     /// The file holds no station.
     EmptyFile = "empty_file",
+    /// More is wrong with the file than is shown.
+    TooManyFindings = "too_many_findings",
     /// The file breaks the rules of TOML.
     Syntax = "syntax",
     /// A key that the program does not know.
@@ -259,19 +261,41 @@ impl Serialize for Code {
 
 /// The nearest of some names to a mistyped one, if one is near enough to be meant.
 ///
-/// Distance counts inserted, dropped, changed and swapped letters; a third of the letters may be
-/// wrong.
+/// Distance counts inserted, dropped, changed and swapped letters; a quarter of the letters may be wrong,
+/// and one in any case. Capitals count least: `CFS` is `cfs`. A single letter is never taken for another.
 pub fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) -> Option<&'a str> {
     // Longer names cannot be a slip of a known one, and the cost grows with the length.
     if name.len() > 64 {
         return None;
     }
+    let lower = name.to_lowercase();
     known
         .into_iter()
-        .map(|candidate| (edit_distance(name, candidate), candidate))
-        .filter(|(distance, candidate)| *distance <= candidate.chars().count().max(3) / 3)
+        .map(|candidate| {
+            let distance = edit_distance(&lower, &candidate.to_lowercase());
+            (2 * distance + usize::from(edit_distance(name, candidate) > distance), candidate)
+        })
+        .filter(|(distance, candidate)| {
+            let letters = candidate.chars().count();
+            let allowed =
+                if letters < 2 || name.chars().count() < 2 { 0 } else { (letters / 4).max(1) };
+            *distance <= 2 * allowed + 1
+        })
         .min_by_key(|(distance, _)| *distance)
         .map(|(_, candidate)| candidate)
+}
+
+/// A list of names for a message: thirty at the most.
+pub fn listed<'a>(names: impl IntoIterator<Item = &'a str>) -> String {
+    const MOST: usize = 30;
+
+    let names: Vec<String> =
+        names.into_iter().map(|name| name.chars().take(60).collect()).collect();
+    let shown = names.iter().take(MOST).cloned().collect::<Vec<_>>().join(", ");
+    match names.len().saturating_sub(MOST) {
+        0 => shown,
+        more => format!("{shown} and {more} more"),
+    }
 }
 
 /// Optimal string alignment distance.
@@ -306,6 +330,10 @@ mod tests {
         assert_eq!(nearest("crest_widht", known), Some("crest_width"));
         assert_eq!(nearest("crest_hight", known), Some("crest_height"));
         assert_eq!(nearest("colour", known), None);
+        assert_eq!(nearest("CFS", ["ft", "cfs"]), Some("cfs"));
+        assert_eq!(nearest("C", ["b", "c"]), Some("c"));
+        assert_eq!(nearest("C", ["b", "d"]), None);
+        assert_eq!(nearest("crest_width", ["crest_height"]), None);
     }
 
     #[test]

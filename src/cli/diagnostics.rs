@@ -49,9 +49,10 @@ fn render(name: &str, text: &str, diagnostic: &Diagnostic) -> String {
             )
         }
         Some((primary, _)) => {
-            let line =
-                text.get(..primary.span.start).map_or(1, |before| before.lines().count().max(1));
-            title.element(Level::NOTE.message(format!("{name}, line {line}")))
+            let before = text.get(..primary.span.start).unwrap_or_default();
+            let line = before.matches('\n').count() + 1;
+            let column = before.rsplit('\n').next().map_or(0, |start| start.chars().count()) + 1;
+            title.element(Level::NOTE.message(format!("{name}, line {line}, column {column}")))
         }
         None => title.element(Level::NOTE.message(name.to_owned())),
     };

@@ -102,6 +102,9 @@ pub enum FaultProblem {
     /// Definitions that need each other.
     #[error("these definitions need each other: {}", .0.join(", "))]
     Circular(Vec<String>),
+    /// The equation of the unknown does not depend on it.
+    #[error("the equation does not depend on the unknown `{0}`")]
+    NotInEquation(String),
     /// The result is neither a definition nor the unknown.
     #[error("nothing defines the result `{0}`")]
     NoResult(String),

@@ -5,7 +5,7 @@ use std::ops::Range;
 
 use super::blueprint::{Blueprint, Fault, FaultProblem, Part, mismatch_fault, syntax_fault};
 use super::expression::{
-    Graph, MismatchError, Number, SymbolId, Tree, TreeKind, parse, parse_equation,
+    Function, Graph, MismatchError, Number, SymbolId, Tree, TreeKind, parse, parse_equation,
 };
 use super::system::{Definition, Model, Unknown};
 use crate::units::Dimension;
@@ -51,6 +51,8 @@ impl<'a> Builder<'a> {
             result_dimension: Dimension::NONE,
             flowing: None,
             beyond: None,
+            names: all_names(blueprint),
+            faulty: Vec::new(),
         };
         Self { blueprint, model, faults: Vec::new() }
     }
@@ -158,12 +160,10 @@ impl<'a> Builder<'a> {
         while !needs.is_empty() {
             let ready = |names: &HashSet<String>| names.iter().all(|name| order.contains(name));
             let Some(next) = needs.iter().position(|(_, names)| ready(names)) else {
-                let mut circle: Vec<String> = needs.into_iter().map(|(name, _)| name).collect();
+                let circle = circle(&needs);
                 let first = circle[0].clone();
-                circle.sort_unstable();
                 let unknown = self.blueprint.unknown.as_ref().map(|unknown| &unknown.name);
-                let part =
-                    if unknown == Some(&first) { Part::From } else { Part::Definition(first) };
+                let part = if unknown == Some(&first) { Part::To } else { Part::Definition(first) };
                 self.fault(part, 0..0, FaultProblem::Circular(circle));
                 return Vec::new();
             };
@@ -188,6 +188,7 @@ impl<'a> Builder<'a> {
                 // The name stays known, so that what needs it is not reported as well.
                 let id = self.model.graph.whole(0);
                 let name = name.to_owned();
+                self.model.faulty.push(name.clone());
                 self.model.definitions.push(Definition { name, id, dimension: Dimension::NONE });
             }
         }
@@ -262,6 +263,10 @@ impl<'a> Builder<'a> {
                 let index = self.model.unknowns.len() - 1;
                 let slope =
                     self.model.graph.derivative(residual, self.model.unknowns[index].symbol);
+                if self.model.graph.is_zero(slope) {
+                    let name = text.name.clone();
+                    self.fault(Part::Equation, 0..0, FaultProblem::NotInEquation(name));
+                }
                 self.model.unknowns[index].residual = residual;
                 self.model.unknowns[index].slope = slope;
             }
@@ -304,6 +309,35 @@ impl<'a> Builder<'a> {
         let (flowing, beyond) = (read(flowing), read(beyond));
         self.model.flowing = flowing;
         self.model.beyond = beyond;
+    }
+}
+
+/// Every name that an equation may hold.
+fn all_names(blueprint: &Blueprint) -> Vec<String> {
+    let inputs = blueprint.inputs.iter().map(|input| input.symbol.clone());
+    let definitions = blueprint.definitions.iter().map(|(name, _)| name.clone());
+    let unknown = blueprint.unknown.iter().map(|unknown| unknown.name.clone());
+    let functions = Function::ALL.iter().map(|(name, _)| (*name).to_owned());
+    let others = ["sqrt", "min", "max"].map(str::to_owned);
+    inputs.chain(definitions).chain(unknown).chain(functions).chain(others).collect()
+}
+
+/// A circle among definitions of which each needs another of them: from any one, needs followed until a
+/// name comes again.
+fn circle(needs: &[(String, HashSet<String>)]) -> Vec<String> {
+    let mut path: Vec<&String> = Vec::new();
+    let mut next = &needs[0];
+    loop {
+        if let Some(start) = path.iter().position(|name| **name == next.0) {
+            return path[start..].iter().map(|name| (*name).clone()).collect();
+        }
+        path.push(&next.0);
+        let mut wanted: Vec<&String> = next.1.iter().collect();
+        wanted.sort_unstable();
+        match needs.iter().find(|(name, _)| wanted.contains(&name)) {
+            Some(found) => next = found,
+            None => return path.into_iter().cloned().collect(),
+        }
     }
 }
 

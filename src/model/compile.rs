@@ -217,13 +217,11 @@ impl<'m> Compiler<'m> {
                 Value::Virtual(_) => None,
             })
             .collect();
-        match constants {
-            Some(values) => Value::Constant(fold(&values)),
-            None => {
-                let operands = operands.iter().map(|operand| self.in_register(*operand)).collect();
-                self.draft(kind, operands)
-            }
+        if let Some(values) = constants {
+            return Value::Constant(fold(&values));
         }
+        let operands = operands.iter().map(|operand| self.in_register(*operand)).collect();
+        self.draft(kind, operands)
     }
 
     /// Positive terms added, then the others subtracted.

@@ -65,6 +65,10 @@ pub struct Model {
     pub(super) result_dimension: Dimension,
     pub(super) flowing: Option<Id>,
     pub(super) beyond: Option<Id>,
+    /// Every name of the blueprint, to find the nearest to a mistyped one.
+    pub(super) names: Vec<String>,
+    /// Definitions that have a fault: their dimension is not known.
+    pub(super) faulty: Vec<String>,
 }
 
 impl Model {
@@ -298,6 +302,9 @@ impl Names for Model {
 
 impl Dimensions for Model {
     fn of_name(&self, name: &str) -> Option<Dimension> {
+        if self.faulty.iter().any(|faulty| faulty == name) {
+            return None;
+        }
         let inputs = self.inputs.iter().map(|input| (&input.symbol, input.dimension));
         let unknowns = self.unknowns.iter().map(|unknown| (&unknown.name, unknown.dimension));
         let definitions = self.definitions.iter().map(|each| (&each.name, each.dimension));
@@ -334,7 +341,6 @@ impl Scope for ModelScope<'_> {
     }
 
     fn known_names(&self) -> Vec<String> {
-        let definitions = self.model.definitions.iter().map(|each| each.name.clone());
-        self.symbols.keys().cloned().chain(definitions).collect()
+        self.model.names.clone()
     }
 }

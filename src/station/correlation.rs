@@ -1,7 +1,7 @@
 //! `[[correlation]]`: sources whose errors go together.
 
 use super::section::{Findings, Section, number, string};
-use crate::diagnostic::{Code, Diagnostic, Span, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
 
 /// A correlation as a file states it.
 #[derive(Clone, Debug, PartialEq)]
@@ -50,7 +50,8 @@ fn read_names(
                 Some(near) => diagnostic
                     .help(format!("the nearest is `{near}`"))
                     .fix(item.span(), format!("\"{near}\"")),
-                None => diagnostic.help(format!("sources: {}", sources.join(", "))),
+                None => diagnostic
+                    .help(format!("sources: {}", listed(sources.iter().map(String::as_str)))),
             });
             return None;
         }

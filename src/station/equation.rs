@@ -4,11 +4,11 @@ use super::section::{Findings, Section, string};
 use super::structure::{
     Evidence, Kind, StationInput, StructureSection, gravity_of, read_input, read_value,
 };
-use crate::diagnostic::{Code, Diagnostic, Span};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
 use crate::model::expression::LowerError;
 use crate::model::structures::{COEFFICIENT_FACTOR, HEAD};
 use crate::model::{Blueprint, Fault, FaultProblem, Input, Model, Part, UnknownText};
-use crate::units::{Dimension, Unit};
+use crate::units::{Dimension, Unit, UnitError};
 
 /// The word in `kind`.
 pub(super) const KIND: &str = "equation";
@@ -23,6 +23,9 @@ pub struct Equation {
     /// It reads the head.
     pub reads_head: bool,
 }
+
+/// More names than any equation needs; work grows with their square.
+const MOST_NAMES: usize = 300;
 
 /// Where the texts of the equations stand in the file.
 #[derive(Default)]
@@ -80,6 +83,28 @@ pub(super) fn read(
         ..Blueprint::default()
     };
     if findings.list.len() > before {
+        return None;
+    }
+    if blueprint.definitions.len() + blueprint.inputs.len() > MOST_NAMES {
+        let title = format!("an equation has at most {MOST_NAMES} definitions and inputs together");
+        findings.error(Code::OutsideDomain, places.result, title);
+        return None;
+    }
+    let known: Vec<String> = blueprint.definitions.iter().map(|(name, _)| name.clone()).collect();
+    if let Some(near) = nearest(&result, known.iter().map(String::as_str))
+        && !known.contains(&result)
+        && blueprint.unknown.as_ref().is_none_or(|unknown| unknown.name != result)
+    {
+        let span = places.result;
+        findings.push(
+            Diagnostic::error(
+                Code::UnknownName,
+                span.clone(),
+                format!("nothing defines the result `{result}`"),
+            )
+            .help(format!("the nearest definition is `{near}`"))
+            .fix(span, format!("\"{near}\"")),
+        );
         return None;
     }
     let model = match Model::build(&blueprint) {
@@ -210,7 +235,14 @@ fn read_unit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Opti
     match Unit::parse(&text) {
         Ok(unit) => Some(unit),
         Err(error) => {
-            findings.error(Code::UnknownUnit, value.span(), format!("`unit`: {error}"));
+            let diagnostic =
+                Diagnostic::error(Code::UnknownUnit, value.span(), format!("`unit`: {error}"));
+            findings.push(match error {
+                UnitError::Unknown { nearest: Some(near), .. } => {
+                    diagnostic.help(format!("did you mean `{near}`?"))
+                }
+                _ => diagnostic.help("docs/station-file.md lists the units"),
+            });
             None
         }
     }
@@ -271,7 +303,9 @@ fn report(fault: &Fault, places: &Places, findings: &mut Findings<'_>) {
     let title = format!("`{what}`: {fault}");
     let diagnostic = match &fault.problem {
         FaultProblem::Syntax(_) => {
-            Diagnostic::error(Code::EquationSyntax, place(&fault.span), title)
+            Diagnostic::error(Code::EquationSyntax, place(&fault.span), title).help(
+                "a product needs its sign: c * b; numbers with a unit belong to [structure.inputs]",
+            )
         }
         FaultProblem::Name(LowerError::UnknownName { nearest, .. }) => {
             let diagnostic = Diagnostic::error(Code::UnknownName, place(&fault.span), title);
@@ -297,9 +331,15 @@ fn report(fault: &Fault, places: &Places, findings: &mut Findings<'_>) {
         }
         FaultProblem::Duplicate(_) => Diagnostic::error(Code::DuplicateName, whole.clone(), title)
             .help("an input, a definition and the unknown each need a name of their own"),
-        FaultProblem::Circular(_) => {
+        FaultProblem::Circular(circle) => {
+            let names = listed(circle.iter().map(String::as_str));
+            let title = format!("`{what}`: these quantities need each other: {names}");
             Diagnostic::error(Code::CircularDefinition, whole.clone(), title)
                 .help("a quantity that depends on itself is an unknown: [structure.unknown]")
+        }
+        FaultProblem::NotInEquation(_) => {
+            Diagnostic::error(Code::EquationSyntax, whole.clone(), title)
+                .help("the equation must hold the unknown: total_head = h + discharge^2/(...)")
         }
         FaultProblem::NoResult(_) => Diagnostic::error(Code::UnknownName, whole.clone(), title)
             .help("the result is one of the definitions, or the unknown"),

@@ -85,7 +85,14 @@ pub fn read(bytes: &[u8]) -> (Option<Station>, Vec<Diagnostic>) {
     });
     let mut list = findings.list;
     list.sort_by_key(|diagnostic| diagnostic.labels.first().map_or(0, |label| label.span.start));
+    let left_out = list.len().saturating_sub(MOST_FINDINGS);
     list.truncate(MOST_FINDINGS);
+    if left_out > 0 {
+        let title = format!("{left_out} more findings are not shown");
+        list.push(
+            Diagnostic::about_file(Code::TooManyFindings, title).help("mend the first ones first"),
+        );
+    }
     for diagnostic in &mut list {
         shift(diagnostic, offset);
     }
@@ -133,23 +140,18 @@ fn shift(diagnostic: &mut Diagnostic, offset: usize) {
 
 fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     let (document, errors) = DeTable::parse_recoverable(text);
-    for error in errors.iter().take(MOST_FINDINGS) {
-        let message = error.message().lines().next().unwrap_or("cannot be read").to_owned();
-        let span = error.span().unwrap_or(0..0);
-        let help = if text[..span.start.min(text.len())].is_empty() && text.starts_with('{') {
-            "a station file is TOML, not JSON"
-        } else {
-            "a line is key = value, texts stand in quotes, tables in [brackets]"
-        };
-        findings.push(Diagnostic::error(Code::Syntax, span, message).help(help));
-    }
+    report_syntax(text, &errors, findings);
     if !findings.list.is_empty() {
         return None;
     }
     let mut root = Section::new("the file", 0..0, document.get_ref());
-    let name = root
-        .need("name", "for example name = \"Lock Marsh, outfall\"", findings)
-        .and_then(|value| super::section::string("name", value, findings));
+    let name = root.need("name", "for example name = \"Lock Marsh, outfall\"", findings).and_then(
+        |value| {
+            let name = super::section::string("name", value, findings)?;
+            source::check_name("the station", &name, &value.span(), findings);
+            Some(name)
+        },
+    );
     let structure = root
         .need("structure", "`nappe new KIND` prints a file to start from", findings)
         .and_then(|value| Section::of("[structure]", value, findings))
@@ -161,8 +163,15 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     let stated_sources = tables("error_source", &mut root, findings);
     let stated_correlations = tables("correlation", &mut root, findings);
     root.finish(findings);
-    // Sources need to know the inputs: without a structure there is nothing to read them against.
-    let StructureSection { kind, mut inputs, unused } = structure?;
+    let stated_names: Vec<String> =
+        stated_sources.iter().filter_map(|section| section.peek("name")).collect();
+    let Some(StructureSection { kind, mut inputs, unused }) = structure else {
+        // What can be told of the sources without knowing the inputs is told all the same.
+        for section in stated_sources {
+            source::read(section, None, findings);
+        }
+        return None;
+    };
     let reads_head = match &kind {
         Kind::Catalogue(_) => true,
         Kind::Own(equation) => equation.reads_head,
@@ -176,15 +185,22 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     let automatic = automatic_names(&kind);
     let sources: Vec<ErrorSource> = stated_sources
         .into_iter()
-        .filter_map(|section| source::read(section, &inputs, &automatic, findings))
+        .filter_map(|section| source::read(section, Some((&inputs, &automatic)), findings))
         .collect();
     check_names(&sources, &inputs, &automatic, findings);
-    let names = all_names(&sources, &inputs, &automatic);
+    let mut names = all_names(&sources, &inputs, &automatic);
+    let faulty: Vec<String> =
+        stated_names.into_iter().filter(|name| !names.contains(name)).collect();
+    let any_faulty = !faulty.is_empty();
+    // A source that has a fault is there all the same: its correlations are no fault of theirs.
+    names.extend(faulty);
     let stated: Vec<StatedCorrelation> = stated_correlations
         .into_iter()
         .filter_map(|section| correlation::read(section, &names, findings))
         .collect();
-    check_correlations(&stated, &names, findings);
+    if !any_faulty {
+        check_correlations(&stated, &names, findings);
+    }
     let warnings = warnings(&sources, &inputs, &unused);
     let correlations = stated.into_iter().map(|each| (each.names, each.coefficient)).collect();
     inputs.shrink_to_fit();
@@ -199,6 +215,36 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
         correlations,
         warnings,
     })
+}
+
+/// What the file breaks of TOML's rules: the first of each line, and a few lines at the most, as one slip
+/// makes nonsense of much that follows.
+fn report_syntax(text: &str, errors: &[toml::de::Error], findings: &mut Findings<'_>) {
+    const MOST: usize = 5;
+
+    let mut last_start: Option<usize> = None;
+    for error in errors {
+        let span = error.span().unwrap_or(0..0);
+        let between = last_start.and_then(|last| text.get(last..span.start));
+        if between.is_some_and(|between| !between.contains('\n')) {
+            continue;
+        }
+        if findings.list.len() >= MOST {
+            break;
+        }
+        last_start = Some(span.start);
+        let message = error.message().lines().next().unwrap_or("cannot be read").to_owned();
+        let help = if text.trim_start().starts_with('{') {
+            "a station file is TOML, not JSON"
+        } else if !text.contains('\n') && text.contains('\r') {
+            "the lines end in carriage returns alone: save the file with usual line ends"
+        } else if message.contains("duplicate key") {
+            "each key stands once in its table; for several sources write [[error_source]]"
+        } else {
+            "a line is key = value, texts stand in quotes, tables in [brackets]"
+        };
+        findings.push(Diagnostic::error(Code::Syntax, span, message).help(help));
+    }
 }
 
 /// The tables of a list such as `[[error_source]]`.
@@ -282,6 +328,7 @@ fn check_names(
         let own = source.replaces.as_deref() == Some(source.name.as_str());
         let observed = inputs.iter().filter(|input| !input.observations.is_empty());
         let reserved = automatic.contains(&source.name)
+            || source.name == super::setting::SURVEYED_ZERO
             || observed.map(observations_name).any(|name| name == source.name);
         if reserved && !own {
             findings.push(

@@ -36,7 +36,15 @@ pub(super) fn read(mut section: Section<'_, '_>, findings: &mut Findings<'_>) ->
                 Diagnostic::error(
                     Code::WrongType,
                     value.span(),
-                    format!("`range` is a list of two heads, not {}", article(other)),
+                    match other {
+                        DeValue::Array(items) => {
+                            format!(
+                                "`range` has two heads, the lower and the higher, not {}",
+                                items.len()
+                            )
+                        }
+                        other => format!("`range` is a list of two heads, not {}", article(other)),
+                    },
                 )
                 .help("for example range = [\"0.06 m\", \"0.30 m\"]"),
             ),
@@ -44,6 +52,11 @@ pub(super) fn read(mut section: Section<'_, '_>, findings: &mut Findings<'_>) ->
     }
     if let Some(value) = section.get("zero_above_crest") {
         head.zero_above_crest = quantity::read("zero_above_crest", value, length, findings);
+        if let Some(zero) = head.zero_above_crest.as_ref().filter(|zero| zero.value.abs() > 5.0) {
+            let title =
+                format!("`zero_above_crest` cannot be {}: it is an offset of the gauge", zero.text);
+            findings.error(Code::OutsideDomain, value.span(), title);
+        }
     }
     section.finish(findings);
     head
@@ -55,7 +68,10 @@ fn check_order(
     span: crate::diagnostic::Span,
     findings: &mut Findings<'_>,
 ) {
-    if low.value >= high.value {
+    if low.value == high.value {
+        let title = format!("`range` begins and ends at {}", low.text);
+        findings.error(Code::RangeReversed, span, title);
+    } else if low.value > high.value {
         findings.push(
             Diagnostic::error(
                 Code::RangeReversed,
@@ -66,8 +82,12 @@ fn check_order(
             .fix(span, format!("[\"{}\", \"{}\"]", high.text, low.text)),
         );
     }
+    if high.value <= 0.0 {
+        let title = format!("`range` ends at {}, where no water passes the crest", high.text);
+        findings.error(Code::OutsideDomain, high.span.clone(), title);
+    }
     for end in [low, high] {
-        if !(-10.0..=100.0).contains(&end.value) {
+        if !(-1.0..=20.0).contains(&end.value) {
             let title = format!("`range`: {} is no head that a station can have", end.text);
             findings.error(Code::OutsideDomain, end.span.clone(), title);
         }

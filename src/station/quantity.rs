@@ -117,16 +117,7 @@ pub(super) fn report(
     let place = if place.is_empty() { span.clone() } else { place };
     let shown: String = text.chars().take(60).collect();
     let diagnostic = match &error.problem {
-        QuantityProblem::DecimalComma(mended) => {
-            let whole = mended.split_whitespace().next().unwrap_or_default().to_owned();
-            Diagnostic::error(
-                Code::DecimalComma,
-                place.clone(),
-                format!("`{what}`: decimals have a point, not a comma"),
-            )
-            .help(format!("write \"{mended}\""))
-            .fix(place, whole)
-        }
+        QuantityProblem::DecimalComma(mended) => decimal_comma(what, mended, place, span),
         QuantityProblem::OutOfRange => Diagnostic::error(
             Code::NumberOutOfRange,
             place,
@@ -162,4 +153,20 @@ pub(super) fn report(
         }
     };
     findings.push(diagnostic);
+}
+
+fn decimal_comma(what: &str, mended: &str, place: Span, whole: &Span) -> Diagnostic {
+    let number = mended.split_whitespace().next().unwrap_or_default();
+    let title = format!("`{what}`: decimals have a point, not a comma");
+    let diagnostic = Diagnostic::error(Code::DecimalComma, place.clone(), title);
+    let decimals = number.split_once('.').map_or(0, |(_, decimals)| decimals.len());
+    let leading = number.trim_start_matches(['-', '+']).starts_with('0');
+    if decimals == 3 && !leading {
+        let joined = mended.replacen('.', "", 1);
+        return diagnostic
+            .help(format!("write \"{mended}\", or \"{joined}\" if thousands are meant"));
+    }
+    let diagnostic = diagnostic.help(format!("write \"{mended}\""));
+    // Where the place inside the text is not known, a patch could not be placed either.
+    if place == *whole { diagnostic } else { diagnostic.fix(place, number) }
 }

@@ -6,7 +6,7 @@ use std::ops::Range;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-use crate::diagnostic::{Code, Diagnostic, Span, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
 
 /// The text of a file and what has been found wrong with it.
 #[derive(Debug)]
@@ -89,7 +89,8 @@ impl<'a, 'i> Section<'a, 'i> {
         self.table.iter().find(|(name, _)| name.get_ref() == key).map(|(_, value)| value)
     }
 
-    /// The value of a key that has to be there.
+    /// The value of a key that has to be there. Where a key stands that looks like a slip of it, only
+    /// the slip is reported.
     pub(super) fn need(
         &mut self,
         key: &str,
@@ -97,11 +98,23 @@ impl<'a, 'i> Section<'a, 'i> {
         findings: &mut Findings<'_>,
     ) -> Option<&'a Spanned<DeValue<'i>>> {
         let value = self.get(key);
-        if value.is_none() {
+        if value.is_none() && !self.has_slip_of(&[key]) {
             let title = format!("{} needs `{key}`", self.name);
-            findings.push(Diagnostic::error(Code::MissingKey, self.span.clone(), title).help(help));
+            findings.push(if self.span.is_empty() {
+                Diagnostic::about_file(Code::MissingKey, title).help(help)
+            } else {
+                Diagnostic::error(Code::MissingKey, self.span.clone(), title).help(help)
+            });
         }
         value
+    }
+
+    /// Some key of the table looks like a slip of one of these.
+    pub(super) fn has_slip_of(&self, keys: &[&str]) -> bool {
+        self.table
+            .iter()
+            .map(|(name, _)| name.get_ref())
+            .any(|name| nearest(name, keys.iter().copied()).is_some_and(|near| near != name))
     }
 
     /// A text, with its place.
@@ -113,6 +126,12 @@ impl<'a, 'i> Section<'a, 'i> {
         let value = self.get(key)?;
         let text = string(key, value, findings)?;
         Some((text, value.span()))
+    }
+
+    /// A text, without a word if it is none: for a first look.
+    pub(super) fn peek(&self, key: &str) -> Option<String> {
+        let (_, value) = self.table.iter().find(|(name, _)| name.get_ref() == key)?;
+        value.get_ref().as_str().map(str::to_owned)
     }
 
     /// A list, with its place; an item that stands alone counts as a list of one.
@@ -154,8 +173,8 @@ impl<'a, 'i> Section<'a, 'i> {
                     .help(format!("the nearest known key is `{known}`"))
                     .fix(name.span(), known);
             } else {
-                let keys: Vec<&str> = self.known.iter().map(String::as_str).collect();
-                diagnostic = diagnostic.help(format!("known keys: {}", keys.join(", ")));
+                let keys = self.known.iter().map(String::as_str);
+                diagnostic = diagnostic.help(format!("known keys: {}", listed(keys)));
             }
             findings.push(diagnostic);
         }

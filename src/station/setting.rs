@@ -50,6 +50,9 @@ pub struct SourceRow {
     pub is_correction: bool,
 }
 
+/// The name of the correction that `[head] zero_above_crest` makes.
+pub(super) const SURVEYED_ZERO: &str = "surveyed zero";
+
 /// Why a station gives no answer at a head.
 #[derive(Clone, Debug, PartialEq, Error)]
 pub enum Refusal {
@@ -263,9 +266,14 @@ impl Station {
         match outcome {
             Outcome::Dry => Err(Refusal::Dry(head.unwrap_or(f64::NAN))),
             Outcome::Undefined => Err(Refusal::NoSolution(
-                "critical flow cannot pass at this head, or a root or logarithm of a negative \
-                 number is taken"
-                    .to_owned(),
+                match self.kind {
+                    Kind::Catalogue(_) => "critical flow cannot pass at this head",
+                    Kind::Own(_) => {
+                        "its unknown has no root in its range, or a division by 0, or a root or \
+                         logarithm of a negative number, is asked for"
+                    }
+                }
+                .to_owned(),
             )),
             _ if !values_are_finite => {
                 Err(Refusal::NoSolution("its slope is infinite at these values".to_owned()))
@@ -371,7 +379,7 @@ impl Builder<'_> {
         let place = self.station.inputs.iter().position(|input| input.key == "head");
         let (Some(zero), Some(input)) = (head, place) else { return };
         self.sources.push(Source {
-            name: "surveyed zero".to_owned(),
+            name: SURVEYED_ZERO.to_owned(),
             effects: vec![Effect { input, action: Action::Shift { gain: 1.0 } }],
             distribution: Distribution::Fixed { mean: -zero.value },
             degrees_of_freedom: f64::INFINITY,

@@ -51,6 +51,21 @@ impl Amount {
     }
 }
 
+/// Longer texts are no sizes.
+const LONGEST: usize = 200;
+
+/// The bound that a part of a size breaks, if it is beyond any error that a station can have.
+fn implausible(part: &Quantity, absolute: bool) -> Option<&'static str> {
+    let size = part.value.abs();
+    if !absolute {
+        return (size > 1.0).then_some("the input itself");
+    }
+    if part.dimension() == Dimension::LENGTH {
+        return (size > 10.0).then_some("10 m");
+    }
+    (!crate::units::is_plausible(part.value)).then_some("any number that a station can have")
+}
+
 /// Reads a size for inputs of a dimension; of any dimension if `None`.
 pub(super) fn read(
     what: &str,
@@ -62,6 +77,11 @@ pub(super) fn read(
         let stated = quantity::read(what, value, dimension, findings)?;
         return Some(Amount { absolute: Some(stated.value), relative: None, text: stated.text });
     };
+    if text.len() > LONGEST {
+        let title = format!("`{what}`: a size has at most {LONGEST} letters");
+        findings.push(Diagnostic::error(Code::NotAQuantity, value.span(), title));
+        return None;
+    }
     let mut amount = Amount { absolute: None, relative: None, text: text.trim().to_owned() };
     let mut at = 0;
     for term in text.split(" + ") {
@@ -83,6 +103,12 @@ pub(super) fn read(
             Some(base) => Some(read(base, dimension)?),
             None => None,
         };
+        let sum_or_part = base.is_some() || text.contains(" + ");
+        if sum_or_part && (size.value < 0.0 || base.as_ref().is_some_and(|base| base.value < 0.0)) {
+            let title = format!("`{what}`: a part of a sum, or of something, cannot be negative");
+            findings.push(Diagnostic::error(Code::OutsideDomain, place, title));
+            return None;
+        }
         let ratio = size.dimension().is_none() && size.unit.as_str() != "1";
         let (absolute, part) = match base {
             Some(base) if size.dimension().is_none() => {
@@ -100,6 +126,14 @@ pub(super) fn read(
         };
         if absolute && let Some(due) = dimension.filter(|due| *due != part.dimension()) {
             wrong_dimension(what, term, &part, due, place, findings);
+            return None;
+        }
+        if let Some(largest) = implausible(&part, absolute) {
+            let title = format!("`{what}`: \"{}\" is larger than {largest}", term.trim());
+            findings.push(
+                Diagnostic::error(Code::OutsideDomain, place, title)
+                    .help("no error of a station is that large: is the unit right?"),
+            );
             return None;
         }
         let slot = if absolute { &mut amount.absolute } else { &mut amount.relative };

@@ -5,7 +5,7 @@ use super::size::{self, Amount, Size};
 use super::spread::{Spread, Width, shift};
 use super::spread_reader::Reader;
 use super::structure::{Evidence, StationInput, read_evidence};
-use crate::diagnostic::{Code, Diagnostic, Span, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
 use crate::propagation::Distribution;
 use crate::units::Dimension;
 
@@ -146,27 +146,32 @@ impl ErrorSource {
     }
 }
 
-/// Reads one source. `inputs` are those of the structure; `automatic` the names of automatic sources.
+/// Reads one source. `structure` has the inputs and the names of the automatic sources; without it, after
+/// a fault there, what can be told of the source is told all the same.
 pub(super) fn read(
     mut section: Section<'_, '_>,
-    inputs: &[StationInput],
-    automatic: &[String],
+    structure: Option<(&[StationInput], &[String])>,
     findings: &mut Findings<'_>,
 ) -> Option<ErrorSource> {
     let before = findings.list.len();
     let name = section
         .need("name", "a source is known by its name in every table", findings)
         .and_then(|value| Some((string("name", value, findings)?, value.span())));
-    if let Some((name, span)) =
-        name.as_ref().filter(|(name, _)| name.trim().is_empty() || name.len() > 200)
-    {
-        let title = format!("a source's name has 1 to 200 letters, not {}", name.len());
-        findings.error(Code::OutsideDomain, span.clone(), title);
+    if let Some((name, span)) = &name {
+        check_name("a source", name, span, findings);
     }
-    let acts_on = read_acts_on(&mut section, inputs, findings);
-    let dimension =
-        acts_on.as_ref().map(|places| common_dimension(places, inputs, &section, findings));
-    let replaces = read_replaces(&mut section, automatic, findings);
+    let acts_on = match structure {
+        Some((inputs, _)) => read_acts_on(&mut section, inputs, findings),
+        None => section.get("acts_on").and(None),
+    };
+    let dimension = acts_on
+        .as_ref()
+        .zip(structure)
+        .map(|(places, (inputs, _))| common_dimension(places, inputs, &section, findings));
+    let replaces = match structure {
+        Some((_, automatic)) => read_replaces(&mut section, automatic, findings),
+        None => section.get("replaces").and(None),
+    };
     let fixed_until = read_fixed_until(&mut section, findings);
     let reliable = section.get("reliable_to").is_some();
     let freedom = read_degrees_of_freedom(&mut section, findings);
@@ -233,6 +238,24 @@ pub(super) fn read(
     })
 }
 
+/// A name is known by its letters: some, not too many, and none that could rewrite a terminal.
+pub(super) fn check_name(whose: &str, name: &str, span: &Span, findings: &mut Findings<'_>) {
+    let letters = name.chars().count();
+    let fault = if name.trim().is_empty() {
+        "is blank"
+    } else if letters > 200 {
+        "has more than 200 letters"
+    } else if name.chars().any(char::is_control) {
+        "holds a line end, a tab or another control character"
+    } else if name.trim() != name {
+        "begins or ends with a blank"
+    } else {
+        return;
+    };
+    let title = format!("the name of {whose} {fault}");
+    findings.error(Code::OutsideDomain, span.clone(), title);
+}
+
 fn describe(size: &str, bias: Option<&(f64, Amount)>, present: Option<f64>) -> String {
     let mut parts = vec![size.to_owned()];
     if let Some((sign, amount)) = bias {
@@ -290,7 +313,7 @@ fn unknown_input(key: &str, span: Span, inputs: &[StationInput], findings: &mut 
         Some(near) => {
             diagnostic.help(format!("the nearest is `{near}`")).fix(span, format!("\"{near}\""))
         }
-        None => diagnostic.help(format!("its inputs: {}", keys.join(", "))),
+        None => diagnostic.help(format!("its inputs: {}", listed(keys.iter().copied()))),
     });
 }
 
@@ -338,7 +361,8 @@ fn read_replaces(
     findings.push(if automatic.is_empty() {
         diagnostic.help("an equation of your own has none: leave `replaces` out")
     } else {
-        diagnostic.help(format!("automatic sources: {}", automatic.join(", ")))
+        diagnostic
+            .help(format!("automatic sources: {}", listed(automatic.iter().map(String::as_str))))
     });
     None
 }
@@ -443,6 +467,7 @@ fn read_present(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> O
 fn read_months(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Vec<u32> {
     let Some((items, _)) = section.list("months") else { return Vec::new() };
     let mut months: Vec<u32> = Vec::new();
+    let stated = items.len();
     for item in items {
         match number(item.get_ref()) {
             Some(month) if month.fract() == 0.0 && (1.0..=12.0).contains(&month) => {
@@ -453,6 +478,10 @@ fn read_months(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Ve
                 findings.error(Code::OutsideDomain, item.span(), title);
             }
         }
+    }
+    if stated == 0 {
+        let span = section.key_span("months").unwrap_or_else(|| section.span.clone());
+        findings.error(Code::OutsideDomain, span, "`months` names no month: leave it out for all");
     }
     months.sort_unstable();
     months.dedup();

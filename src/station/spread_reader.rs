@@ -49,7 +49,7 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
         let shape = self.read_shape(&stated);
         for key in ["coverage_factor", "coverage"] {
             let span = self.section.get(key).map(Spanned::span);
-            if let Some(span) = span.filter(|_| stated != ["expanded_uncertainty"]) {
+            if let Some(span) = span.filter(|_| !stated.contains(&"expanded_uncertainty")) {
                 self.disagree(span, &format!("`{key}` belongs to `expanded_uncertainty`"));
             }
         }
@@ -64,6 +64,7 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
                 text: String::new(),
                 freedom: None,
             }),
+            [] if self.section.has_slip_of(&SIZE_KEYS) => None,
             [] => {
                 let name = self.section.name().to_owned();
                 self.findings.push(
@@ -117,7 +118,7 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
                     Diagnostic::error(
                         Code::TwoSizes,
                         second_span,
-                        format!("the size is stated twice: `{first}` and `{second}`"),
+                        format!("the size is stated more than once: {}", stated.join(", ")),
                     )
                     .context(first_span, "stated here as well")
                     .help("state the size in exactly one way"),
@@ -253,7 +254,9 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
         let span = self.section.key_span(key).unwrap_or(0..0);
         self.disagree(
             span,
-            &format!("`{key}` is not above `half_width`, and both are lengths or both are in %"),
+            &format!(
+                "`{key}` must not be above the half-width, and must be stated in its kind of unit"
+            ),
         );
         None
     }

@@ -83,8 +83,10 @@ pub(super) fn read(
     for spec in structure.all_inputs() {
         if spec.key == "head" {
             inputs.push(input_without_value(&spec));
-        } else if let Some(input) = read_input(&mut section, &spec, findings) {
-            inputs.push(input);
+        } else {
+            // An input with a fault stays an input, so that what acts on it is not reported as well.
+            let read = read_input(&mut section, &spec, findings);
+            inputs.push(read.unwrap_or_else(|| input_without_value(&spec)));
         }
     }
     let mut unused = Vec::new();
@@ -92,11 +94,36 @@ pub(super) fn read(
     if !inputs.iter().any(|input| input.key == KINETIC_ENERGY_COEFFICIENT.key)
         && let Some(value) = section.get(KINETIC_ENERGY_COEFFICIENT.key)
     {
-        quantity::read(KINETIC_ENERGY_COEFFICIENT.key, value, Some(Dimension::NONE), findings);
+        read_input(&mut section, &KINETIC_ENERGY_COEFFICIENT, findings);
         unused.push((KINETIC_ENERGY_COEFFICIENT.key.to_owned(), value.span()));
     }
     section.finish(findings);
+    check_widths(&inputs, findings);
     Some(StructureSection { kind: Kind::Catalogue(structure), inputs, unused })
+}
+
+/// No crest or throat is wider than the channel that leads to it.
+fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
+    let find = |key: &str| inputs.iter().find(|input| input.key == key);
+    let Some(approach) = find("approach_width") else { return };
+    for control in ["crest_width", "throat_width"].into_iter().filter_map(find) {
+        let (Some(control_width), Some(approach_width)) = (control.value, approach.value) else {
+            continue;
+        };
+        if control_width > approach_width {
+            let span = approach.span.clone().unwrap_or(0..0);
+            let title = format!(
+                "`approach_width` ({}) is below `{}` ({})",
+                approach.text, control.key, control.text
+            );
+            let diagnostic = Diagnostic::error(Code::OutsideDomain, span, title)
+                .help("the approach channel is at least as wide as the control");
+            findings.push(match &control.span {
+                Some(span) => diagnostic.context(span.clone(), "the control is wider"),
+                None => diagnostic,
+            });
+        }
+    }
 }
 
 fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) {

@@ -24,7 +24,8 @@ pub struct MismatchError {
     pub places: Vec<(Range<usize>, String)>,
 }
 
-/// A dimension, or that of the number 0, which fits anything.
+/// A dimension; none for the number 0, and for names that nothing defines, which fit anything: the
+/// latter are reported where names are looked up.
 type Found = Option<Dimension>;
 
 /// The dimension of a tree.
@@ -32,15 +33,17 @@ type Found = Option<Dimension>;
 /// # Errors
 ///
 /// [`MismatchError`]: terms of a sum, sides of a comparison or branches of a choice that differ; an
-/// exponent, or an argument of a function, that is not a pure number. Unknown names count as pure
-/// numbers here: they are reported where the names are looked up.
+/// exponent, or an argument of a function, that is not a pure number.
 pub(in crate::model) fn check(tree: &Tree, names: &dyn Dimensions) -> Result<Found, MismatchError> {
     match &tree.kind {
         TreeKind::Number(text) => {
             Ok(if text.parse() == Ok(0.0) { None } else { Some(Dimension::NONE) })
         }
         TreeKind::Name(name) => {
-            Ok(Some(names.of_name(name).unwrap_or(Dimension::NONE).in_equations()))
+            // The circle's ratio is the one name that needs no definition.
+            let found =
+                names.of_name(name).or((name == "pi" || name == "π").then_some(Dimension::NONE));
+            Ok(found.map(Dimension::in_equations))
         }
         TreeKind::Sum(terms) => {
             let parts: Vec<&Tree> = terms.iter().map(|(_, term)| term).collect();
@@ -48,12 +51,16 @@ pub(in crate::model) fn check(tree: &Tree, names: &dyn Dimensions) -> Result<Fou
         }
         TreeKind::Product(factors) => {
             let mut result = Dimension::NONE;
+            let mut fits_anything = false;
             for (divides, factor) in factors {
-                let dimension = check(factor, names)?.unwrap_or(Dimension::NONE);
+                let Some(dimension) = check(factor, names)? else {
+                    fits_anything = true;
+                    continue;
+                };
                 let next = if *divides { result.per(dimension) } else { result.times(dimension) };
                 result = next.ok_or_else(|| overflow(tree))?;
             }
-            Ok(Some(result))
+            Ok(Some(result).filter(|_| !fits_anything))
         }
         TreeKind::Power(parts) => power(tree, parts, names),
         TreeKind::Call(name, arguments) => call(tree, name, arguments, names),
@@ -67,8 +74,9 @@ pub(in crate::model) fn check(tree: &Tree, names: &dyn Dimensions) -> Result<Fou
 
 fn power(tree: &Tree, parts: &[Tree; 2], names: &dyn Dimensions) -> Result<Found, MismatchError> {
     let [base, exponent] = parts;
-    let dimension = check(base, names)?.unwrap_or(Dimension::NONE);
+    let base_dimension = check(base, names)?;
     pure(exponent, names, "an exponent is a pure number")?;
+    let Some(dimension) = base_dimension else { return Ok(None) };
     if dimension.is_none() {
         return Ok(Some(dimension));
     }
@@ -93,7 +101,7 @@ fn call(
     let parts: Vec<&Tree> = arguments.iter().collect();
     match name {
         "sqrt" => {
-            let dimension = check(&arguments[0], names)?.unwrap_or(Dimension::NONE);
+            let Some(dimension) = check(&arguments[0], names)? else { return Ok(None) };
             let root = dimension.power(crate::units::Rational::HALF);
             Ok(Some(root.ok_or_else(|| overflow(tree))?))
         }
@@ -105,7 +113,8 @@ fn call(
             for argument in parts {
                 pure(argument, names, "a function or table takes a pure number or an angle")?;
             }
-            Ok(Some(names.of_name(table).unwrap_or(Dimension::NONE)))
+            let is_function = super::Function::ALL.iter().any(|(known, _)| *known == name);
+            Ok(if is_function { Some(Dimension::NONE) } else { names.of_name(table) })
         }
     }
 }
