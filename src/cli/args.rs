@@ -221,7 +221,8 @@ fn probability(text: &str) -> Result<f64, String> {
 
 fn factor(text: &str) -> Result<f64, String> {
     match text.parse::<f64>() {
-        Ok(factor) if (0.5..=5.0).contains(&factor) => Ok(factor),
-        _ => Err("a number from 0.5 to 5 is due, such as 2".to_owned()),
+        // 3.89 is the factor of 99.99 % of a normal distribution.
+        Ok(factor) if (0.5..=3.89).contains(&factor) => Ok(factor),
+        _ => Err("a number from 0.5 to 3.89 is due, such as 2".to_owned()),
     }
 }

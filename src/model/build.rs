@@ -198,19 +198,22 @@ impl<'a> Builder<'a> {
     fn declare_unknown(&mut self, name: &str, bounds: &[Tree; 2]) {
         let zero = self.model.graph.whole(0);
         let mut ids = [zero, zero];
-        let mut dimensions = [Dimension::NONE; 2];
+        let mut dimensions = [None; 2];
         for (index, (tree, part)) in bounds.iter().zip([Part::From, Part::To]).enumerate() {
             match self.model.lower(tree, &part) {
                 Ok(id) => ids[index] = id,
                 Err(faults) => self.faults.extend(faults),
             }
             match self.model.graph_dimension(tree) {
-                Ok(dimension) => dimensions[index] = dimension.unwrap_or(Dimension::NONE),
+                Ok(dimension) => dimensions[index] = dimension,
                 Err(error) => self.faults.push(mismatch_fault(&part, error)),
             }
         }
-        if self.faults.is_empty() && dimensions[0] != dimensions[1] {
-            let [from, to] = dimensions.map(Dimension::described);
+        // A bound of 0 fits any dimension.
+        let dimension = dimensions[0].or(dimensions[1]).unwrap_or(Dimension::NONE);
+        let both = dimensions.map(|bound| bound.unwrap_or(dimension));
+        if self.faults.is_empty() && both[0] != both[1] {
+            let [from, to] = both.map(Dimension::described);
             let message = format!("both bounds need one dimension: `from` is {from}, `to` is {to}");
             let places = vec![(bounds[1].span.clone(), to)];
             self.faults.push(mismatch_fault(&Part::To, MismatchError { message, places }));
@@ -220,7 +223,7 @@ impl<'a> Builder<'a> {
         self.model.unknowns.push(Unknown {
             name: name.to_owned(),
             symbol,
-            dimension: dimensions[0],
+            dimension,
             residual: zero,
             slope: zero,
             lower: ids[0],

@@ -62,7 +62,7 @@ bibliography! {
     /// The experiments behind the rectangular thin-plate equation.
     KINDSVATER_CARTER = "Kindsvater and Carter 1957", "Discharge characteristics of rectangular thin-plate weirs";
     /// Charts of notch coefficients.
-    NBS_421 = "NBS SP 421 (Kulin and Compton 1975)", "A guide to methods and standards for the measurement of water flow, figures 4-3 and 4-5";
+    NBS_421 = "NBS SP 421 (Kulin and Compton 1975)", "A guide to methods and standards for the measurement of water flow, figures 4-3 and 4-5, as digitised by others";
     /// A manual of water measurement.
     USBR_MANUAL = "USBR Water Measurement Manual, 3rd ed.", "Chapter 7, weirs";
     /// A textbook table of thin-plate coefficients.

@@ -220,6 +220,29 @@ impl Model {
             .collect()
     }
 
+    /// The inputs that an expression is made of, by place; those of its unknowns included.
+    pub fn inputs_of(&self, id: Id) -> Vec<usize> {
+        let mut found = Vec::new();
+        for part in self.graph.reachable([id]) {
+            let Node::Symbol(symbol) = self.graph.node(part) else { continue };
+            let place = symbol.0 as usize;
+            match place.checked_sub(self.inputs.len()) {
+                None => found.push(place),
+                Some(unknown) => found.extend(
+                    self.graph
+                        .reachable([self.unknowns[unknown].residual])
+                        .into_iter()
+                        .filter_map(|part| match self.graph.node(part) {
+                            Node::Symbol(symbol) => Some(symbol.0 as usize),
+                            _ => None,
+                        })
+                        .filter(|place| *place < self.inputs.len()),
+                ),
+            }
+        }
+        found
+    }
+
     /// The table itself.
     pub fn table(&self, table: TableId) -> &Table {
         self.graph.table(table)

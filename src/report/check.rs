@@ -13,7 +13,7 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
         "The file reads without error: {}, {} stated sources and {} published ones.",
         check.kind, check.stated_sources, check.automatic_sources
     ));
-    let rows: Vec<Vec<String>> = check.ends.iter().map(|end| row(end, units)).collect();
+    let rows: Vec<Vec<String>> = check.ends.iter().map(|end| row(end, check, units)).collect();
     if rows.is_empty() {
         page.paragraph(
             "No range of heads is stated: [head] range would have it checked at both ends.",
@@ -25,7 +25,7 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
     page
 }
 
-fn row(end: &CheckedEnd, units: UnitSystem) -> Vec<String> {
+fn row(end: &CheckedEnd, check: &Check, units: UnitSystem) -> Vec<String> {
     let unit = units.head();
     let head = end.head.map_or_else(
         || "-".to_owned(),
@@ -34,8 +34,10 @@ fn row(end: &CheckedEnd, units: UnitSystem) -> Vec<String> {
     let result = match &end.result {
         Ok((value, si)) => {
             let dimension = Unit::parse(si).map(|unit| unit.dimension());
-            let unit = dimension
-                .map_or_else(|_| Unit::one(), |dimension| units.result(dimension, *value, None));
+            let unit = dimension.map_or_else(
+                |_| Unit::one(),
+                |dimension| units.result(dimension, *value, check.stated_unit.as_ref()),
+            );
             format!("{} {unit}", significant(unit.from_si(*value), 4))
         }
         Err(refusal) => refusal.to_string(),

@@ -44,6 +44,7 @@ pub(super) fn read(
     let mut inputs = read_inputs(&mut section, findings);
     let reads_head = inputs.iter().any(|input| input.key == HEAD.key);
     let gravity = gravity_of(&mut section, findings);
+    let factor_span = section.key_span(COEFFICIENT_FACTOR.key);
     let factor = read_input(&mut section, &COEFFICIENT_FACTOR, findings);
     let definitions = read_definitions(&mut section, &mut places, findings);
     let unknown = read_unknown(&mut section, &mut places, findings);
@@ -60,23 +61,17 @@ pub(super) fn read(
     let (result, result_span) = result?;
     places.result = result_span;
 
-    // Names that the user has given a meaning of their own keep it.
-    for common in [Some(gravity), factor.filter(|_| reads_head)].into_iter().flatten() {
-        let taken = inputs.iter().any(|input| input.symbol == common.symbol)
-            || definitions.iter().any(|(known, _)| *known == common.symbol);
-        if !taken {
-            inputs.push(common);
-        }
+    // A name that the user has given a meaning of their own keeps it.
+    let taken = inputs.iter().any(|input| input.symbol == gravity.symbol)
+        || definitions.iter().any(|(name, _)| *name == gravity.symbol);
+    if !taken {
+        inputs.push(gravity);
+    } else if let Some(span) = gravity.span {
+        let title = "`gravity` has no effect: `g` is a name of this equation's own";
+        findings.error(Code::UnusedKey, span, title);
     }
     let blueprint = Blueprint {
-        inputs: inputs
-            .iter()
-            .map(|input| Input {
-                key: input.key.clone(),
-                symbol: input.symbol.clone(),
-                dimension: input.dimension,
-            })
-            .collect(),
+        inputs: inputs.iter().map(model_input).collect(),
         definitions,
         unknown,
         result: result.clone(),
@@ -126,19 +121,37 @@ pub(super) fn read(
         findings.error(Code::DimensionMismatch, places.result, title);
         return None;
     }
-    let blueprint = with_factor(blueprint);
+    let multiplies = reads_head && blueprint.definitions.iter().any(|(name, _)| *name == result);
+    let blueprint = match (factor, factor_span) {
+        (Some(factor), _) if multiplies => {
+            let blueprint = with_factor(blueprint, &factor);
+            inputs.push(factor);
+            blueprint
+        }
+        (_, Some(span)) => {
+            findings.push(
+                Diagnostic::error(Code::UnusedKey, span, "`coefficient_factor` has no effect here")
+                    .help("it multiplies a result that is a definition, of an equation that reads a head"),
+            );
+            return None;
+        }
+        _ => blueprint,
+    };
     let equation = Equation { blueprint, unit, reads_head };
     Some(StructureSection { kind: Kind::Own(Box::new(equation)), inputs, unused: Vec::new() })
 }
 
-/// The factor on the coefficient multiplies the result wherever it is used.
-fn with_factor(mut blueprint: Blueprint) -> Blueprint {
-    let symbol = COEFFICIENT_FACTOR.symbol;
-    if blueprint.inputs.iter().any(|input| input.key == COEFFICIENT_FACTOR.key) {
-        for (name, text) in &mut blueprint.definitions {
-            if *name == blueprint.result {
-                *text = format!("{symbol}*({text})");
-            }
+fn model_input(input: &StationInput) -> Input {
+    Input { key: input.key.clone(), symbol: input.symbol.clone(), dimension: input.dimension }
+}
+
+/// The factor on the coefficient multiplies the result wherever it is used. The user's own
+/// equations were checked without it, so none of them holds its symbol.
+fn with_factor(mut blueprint: Blueprint, factor: &StationInput) -> Blueprint {
+    blueprint.inputs.push(model_input(factor));
+    for (name, text) in &mut blueprint.definitions {
+        if *name == blueprint.result {
+            *text = format!("{}*({text})", factor.symbol);
         }
     }
     blueprint
@@ -250,7 +263,7 @@ fn read_unit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Opti
 
 /// A name that equations can hold, and that is none of their words.
 fn is_name(name: &str) -> bool {
-    let words = ["when", "otherwise", "sqrt", "min", "max", "pi", "π"];
+    let words = ["when", "otherwise", "sqrt", "min", "max", "pi", "π", COEFFICIENT_FACTOR.symbol];
     let functions = crate::model::expression::Function::ALL.map(|(name, _)| name);
     let mut letters = name.chars();
     letters.next().is_some_and(char::is_alphabetic)

@@ -111,7 +111,7 @@ pub(super) fn read(
         }
         let ratio = size.dimension().is_none() && size.unit.as_str() != "1";
         let (absolute, part) = match base {
-            Some(base) if size.dimension().is_none() => {
+            Some(base) if size.dimension().is_none() && size.unit.as_str() != "1" => {
                 (true, Quantity { value: size.value * base.value, unit: base.unit })
             }
             Some(_) => {

@@ -507,5 +507,11 @@ fn read_bias(
         (None, Some(value)) => ("reads_low_by", value, -1.0),
         (None, None) => return None,
     };
-    Some((sign, size::read(key, value, dimension, findings)?))
+    let amount = size::read(key, value, dimension, findings)?;
+    if amount.at(1.0) < 0.0 {
+        let title = format!("`{key}` cannot be negative: the word says which way");
+        findings.error(Code::OutsideDomain, value.span(), title);
+        return None;
+    }
+    Some((sign, amount))
 }

@@ -3,7 +3,7 @@
 use toml::Spanned;
 use toml::de::DeValue;
 
-use super::section::{Findings, Section, article, number, string};
+use super::section::{Findings, Section, article, number};
 use super::size::{self, Amount, Size};
 use super::source::{FixedUntil, round_to, unknown_word};
 use super::spread::{Shape, Spread, Width};
@@ -428,12 +428,14 @@ fn read_probability(
     value: &Spanned<DeValue<'_>>,
     findings: &mut Findings<'_>,
 ) -> Option<f64> {
-    let text = string(key, value, findings)?;
-    let probability = Quantity::parse(&text)
-        .ok()
-        .filter(|quantity| quantity.dimension().is_none())
-        .map(|quantity| quantity.value)
-        .filter(|p| (0.5..=0.9999).contains(p));
+    let stated = match value.get_ref().as_str() {
+        Some(text) => Quantity::parse(text)
+            .ok()
+            .filter(|quantity| quantity.dimension().is_none())
+            .map(|quantity| quantity.value),
+        None => number(value.get_ref()),
+    };
+    let probability = stated.filter(|p| (0.5..=0.9999).contains(p));
     if probability.is_none() {
         let title = format!("`{key}` is a probability from 50 % to 99.99 %, such as \"95 %\"");
         findings.error(Code::OutsideDomain, value.span(), title);

@@ -274,8 +274,9 @@ fn find_head(station: &Station, question: &Question) -> Result<Option<f64>, Refu
     }
 }
 
-/// Heads beyond this are none that a station has.
+/// Heads beyond these are none that a station shows.
 const HIGHEST_HEAD: f64 = 20.0;
+const LOWEST_HEAD: f64 = -5.0;
 
 /// The indicated head at which the corrected result is `flow`, by bisection: the result grows with the
 /// head, but may jump where the form of the equation changes.
@@ -298,7 +299,8 @@ fn head_for_flow(station: &Station, flow: f64, month: Option<u32>) -> Result<f64
         }
         high = (high * 1.5).min(HIGHEST_HEAD);
     }
-    let mut low = 0.0;
+    // With a zero above the crest water flows at indicated heads below 0.
+    let mut low = LOWEST_HEAD;
     for _ in 0..100 {
         let middle = f64::midpoint(low, high);
         if middle <= low || middle >= high {
@@ -390,6 +392,9 @@ fn result_part(
     }
 }
 
+/// Where more trials than this have no value, an interval from the others says nothing.
+const MOST_UNDEFINED: f64 = 0.01;
+
 /// Runs the Monte Carlo method with its shares, and notes what was special about the trials.
 fn run_monte_carlo(
     setting: &mut Setting,
@@ -409,6 +414,18 @@ fn run_monte_carlo(
         ));
         return None;
     };
+    let left_out = result.tally.undefined as f64 / result.trials as f64;
+    if left_out > MOST_UNDEFINED {
+        warnings.push(Warning::new(
+            Code::TrialsUndefined,
+            format!(
+                "the Monte Carlo method is left out: in {} % of the trials the equation has no value, \
+                 so that neither method can be relied on here",
+                significant(100.0 * left_out, 3)
+            ),
+        ));
+        return None;
+    }
     let shares = shares(problem, question.seed);
     let statistics = result.outputs[0];
     let agreement = Agreement::new(
@@ -486,6 +503,8 @@ fn freedom_warning(linear: &Linear) -> Option<Warning> {
 
 /// Whether the corrected values lie at a node of a published table, or outside one.
 fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Warning> {
+    let varies: Vec<bool> =
+        (0..corrected.len()).map(|input| setting.problem.varies(input)).collect();
     let model = &mut setting.problem.model;
     let mut warnings = Vec::new();
     for (table, arguments) in model.look_ups() {
@@ -494,7 +513,7 @@ fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Warning> {
         let name = table.name().to_owned();
         let places = table.axes().into_iter().zip(&values).take(table.arguments());
         // A value that is the same in every trial has no slope to jump.
-        let varying = arguments.iter().map(|id| model.graph().as_number(*id).is_none());
+        let varying = arguments.map(|id| model.inputs_of(id).iter().any(|input| varies[*input]));
         for ((axis, value), varies) in places.zip(varying) {
             if axis.excludes(*value) {
                 let text = format!(
@@ -585,7 +604,10 @@ fn rows(
             let (source, row) = (&problem.sources[place], &setting.rows[place]);
             let contribution = linear.contributions[place];
             let group = groups.iter().find(|group| group.contains(&place));
-            let others = group.into_iter().flatten().filter(|other| **other != place);
+            let others = group
+                .into_iter()
+                .flatten()
+                .filter(|other| **other != place && problem.correlation(**other, place) != 0.0);
             BudgetRow {
                 rank,
                 name: source.name.clone(),

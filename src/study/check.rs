@@ -2,7 +2,8 @@
 
 use crate::diagnostic::Warning;
 use crate::propagation::linear;
-use crate::station::{Refusal, Station};
+use crate::station::{Kind, Refusal, Station};
+use crate::units::Unit;
 
 use super::limits::{LimitState, limit_states};
 
@@ -17,6 +18,8 @@ pub struct Check {
     pub stated_sources: usize,
     /// How many the structure brings with it.
     pub automatic_sources: usize,
+    /// The unit that an own equation states for its result.
+    pub stated_unit: Option<Unit>,
     /// For each end of the range of heads: the head, the discharge, and the limits that are not kept.
     pub ends: Vec<CheckedEnd>,
     /// What is doubtful about the file.
@@ -40,14 +43,11 @@ pub fn check(station: &Station) -> Check {
         None => vec![None],
         Some(head) => head.range.iter().flatten().map(|stated| Some(stated.value)).collect(),
     };
-    let mut automatic_sources = 0;
     let ends = heads
         .into_iter()
         .map(|head| match station.at(head, None) {
             Err(refusal) => CheckedEnd { head, result: Err(refusal), broken: Vec::new() },
             Ok(mut setting) => {
-                automatic_sources =
-                    setting.rows.iter().filter(|row| row.published.is_some()).count();
                 let found = linear(&mut setting.problem).swap_remove(0);
                 let finite = found.value.is_finite() && found.standard_uncertainty.is_finite();
                 let unit = setting.problem.model.result_dimension().to_string();
@@ -58,20 +58,26 @@ pub fn check(station: &Station) -> Check {
                 let limits = setting.regime.map_or_else(Vec::new, |(_, regime)| {
                     limit_states(&mut setting.problem.model, regime, &corrected)
                 });
-                let broken = limits.into_iter().filter(|limit| !limit.kept).collect();
+                // Without a flow there is nothing to hold against the limits.
+                let broken =
+                    limits.into_iter().filter(|limit| result.is_ok() && !limit.kept).collect();
                 CheckedEnd { head, result, broken }
             }
         })
         .collect();
-    let kind = match &station.kind {
-        crate::station::Kind::Catalogue(structure) => structure.kind.to_owned(),
-        crate::station::Kind::Own(_) => "equation".to_owned(),
+    let replaced = station.sources.iter().filter(|source| source.replaces.is_some()).count();
+    let (kind, automatic_sources, stated_unit) = match &station.kind {
+        Kind::Catalogue(structure) => {
+            (structure.kind.to_owned(), 1 + structure.adjustments.len() - replaced, None)
+        }
+        Kind::Own(equation) => ("equation".to_owned(), 0, Some(equation.unit.clone())),
     };
     Check {
         station: station.name.clone(),
         kind,
         stated_sources: station.sources.len(),
         automatic_sources,
+        stated_unit,
         ends,
         warnings: station.warnings.clone(),
     }

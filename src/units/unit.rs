@@ -154,13 +154,18 @@ fn unknown(symbol: &str) -> UnitError {
     }
 }
 
-/// The symbols of a unit, each with whether it divides; an empty symbol where one is missing.
+/// The symbols of a unit, each with whether it divides; an empty symbol where one is missing. A sign in
+/// brackets belongs to an exponent.
 fn factors(text: &str) -> Vec<(bool, &str)> {
     let mut result = Vec::new();
     let mut divides = false;
     let mut start = 0;
     for (index, sign) in text.match_indices(['/', '*', '·', ' ']) {
-        result.push((divides, &text[start..index]));
+        let before = &text[start..index];
+        if before.contains('(') && !before.contains(')') {
+            continue;
+        }
+        result.push((divides, before));
         divides = sign == "/";
         start = index + sign.len();
     }
@@ -245,6 +250,8 @@ mod tests {
             assert_eq!(Unit::parse(text).unwrap().dimension(), Dimension::DISCHARGE, "{text}");
         }
         assert_eq!(Unit::parse("m^0.5/s").unwrap().dimension().to_string(), "m^0.5/s");
+        let third = Unit::parse("m^(1/3)/s").unwrap().dimension();
+        assert_eq!(Unit::parse(&third.to_string()).unwrap().dimension(), third);
         assert_eq!(Unit::parse("Pa s").unwrap().dimension().to_string(), "kg/m/s");
         assert_eq!(Unit::parse("1/s").unwrap().dimension().to_string(), "1/s");
     }

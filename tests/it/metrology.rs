@@ -87,7 +87,7 @@ fn a_dominant_rectangular_input_as_in_table_4() {
 }
 
 /// JCGM 100:2008 G.4.1, example: Y = b X1 X2 X3 with relative uncertainties 0.25 %, 0.57 % and 0.82 % of
-/// 10, 5 and 15 readings: u = 1.03 %, 19.0 degrees of freedom, t_95(19) = 2.09.
+/// 10, 5 and 15 readings: u = 1.03 %, 19.0 degrees of freedom, `t_95(19)` = 2.09.
 #[test]
 fn welch_satterthwaite_as_in_the_guide() {
     let found = solve(
@@ -156,9 +156,8 @@ fn coverage_factors_are_those_of_table_g_2() {
 fn full_correlation_adds_linearly() {
     let mut text = sum_of(&["standard_uncertainty = 0.0001"; 10]);
     for (i, j) in (1..=10).flat_map(|i| (1..i).map(move |j| (j, i))) {
-        text.push_str(&format!(
-            "\n[[correlation]]\nsources = [\"of x{i}\", \"of x{j}\"]\ncoefficient = 1\n"
-        ));
+        let names = format!("sources = [\"of x{i}\", \"of x{j}\"]");
+        text += &["\n[[correlation]]\n", &names, "\ncoefficient = 1\n"].concat();
     }
     let found = solve(&text, 100_000);
     near(found.linear.standard_uncertainty, 0.001, 1e-12);

@@ -60,7 +60,7 @@ fn rows() -> Vec<Row> {
 /// Half a unit of the last printed digit, relative.
 fn printed_digits(value: &str) -> f64 {
     let decimals = value.split_once('.').map_or(0, |(_, fraction)| fraction.len());
-    0.5 * 10_f64.powi(-(decimals as i32)) / value.parse::<f64>().unwrap().abs()
+    0.5 / 10_f64.powf(decimals as f64) / value.parse::<f64>().unwrap().abs()
 }
 
 /// The next larger number of one digit: 0.00157 gives 0.002.

@@ -45,8 +45,10 @@ pub struct OutputStatistics {
 /// Fewer blocks can settle by luck: with two or three the four deviations are sometimes all small. The
 /// guide asks for two; this is stricter.
 const LEAST_BLOCKS: u64 = 10;
-/// Where figures have not settled by then they will not for any price: about 12 million trials.
-const MOST_BLOCKS: u64 = 1000;
+/// Where figures have not settled by then they will not for any price. All values are kept until then.
+const MOST_TRIALS: u64 = 12_288_000;
+/// The largest block, reached at a coverage of 99.99 %: with ten of them the work stays bounded.
+const LARGEST_BLOCK: f64 = 1e6;
 
 /// Runs the Monte Carlo method. `progress` is told of trials as they are done, from any thread.
 ///
@@ -82,7 +84,7 @@ pub fn monte_carlo(
 /// not below max(J, 10^4), with J the smallest whole number not below 100/(1 - p).
 fn block_size(probability: f64) -> usize {
     // 1 - 0.95 is not 0.05 to the last bit: a hair is taken off, so that J is 2000 and not 2001.
-    let j = (100.0 / (1.0 - probability) - 1e-6).ceil().clamp(1e4, 1e9) as usize;
+    let j = (100.0 / (1.0 - probability) - 1e-6).ceil().clamp(1e4, LARGEST_BLOCK) as usize;
     j.div_ceil(SUPER_BLOCK) * SUPER_BLOCK
 }
 
@@ -98,7 +100,8 @@ fn adaptive(
     let mut blocks: Vec<Vec<[f64; 4]>> = Vec::new();
     // Blocks are run several at a time for the sake of many threads; whether to stop is asked after each,
     // and those run beyond are thrown away, so that the answer does not depend on how many that was.
-    for batch in (0..MOST_BLOCKS).step_by(LEAST_BLOCKS as usize) {
+    let most_blocks = (MOST_TRIALS / size as u64).max(LEAST_BLOCKS);
+    for batch in (0..most_blocks).step_by(LEAST_BLOCKS as usize) {
         let runs: Vec<(Trials, Vec<[f64; 4]>)> = (batch..batch + LEAST_BLOCKS)
             .into_par_iter()
             .map(|block| {
@@ -122,7 +125,7 @@ fn adaptive(
             }
         }
     }
-    (all, MOST_BLOCKS * size as u64, false)
+    (all, blocks.len() as u64 * size as u64, false)
 }
 
 /// Mean, standard deviation and both ends of the symmetric interval of one block.
