@@ -83,7 +83,7 @@ impl From<UnitsArg> for UnitSystem {
 pub(super) struct BudgetArgs {
     /// The station file.
     pub(super) station: PathBuf,
-    /// Indicated head, such as "0.25 m"; without it, the middle of [head] range.
+    /// Indicated head, such as "0.25 m"; without it, the middle of the range of heads.
     #[arg(long, value_name = "HEAD", allow_hyphen_values = true, value_parser = length)]
     pub(super) head: Option<f64>,
     /// Corrected flow, such as "20 l/s", at whose head the budget is drawn up.

@@ -14,7 +14,6 @@ mod program;
 mod solve;
 pub mod source;
 pub mod structures;
-
 mod system;
 mod tape;
 

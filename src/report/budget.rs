@@ -25,7 +25,7 @@ pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
     );
     if !budget.corrections.is_empty() {
         page.heading("Known biases taken out");
-        correction_table(&mut page, budget);
+        correction_table(&mut page, budget, units);
     }
     if !budget.warnings.is_empty() {
         page.heading("Warnings");
@@ -272,7 +272,8 @@ fn source_words(row: &BudgetRow) -> String {
     text
 }
 
-fn correction_table(page: &mut Document, budget: &Budget) {
+fn correction_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
+    let head_error = units.head_error();
     let rows = budget
         .corrections
         .iter()
@@ -280,7 +281,7 @@ fn correction_table(page: &mut Document, budget: &Budget) {
             let size = if unit == "1" {
                 format!("{} %", significant(100.0 * bias, 3))
             } else if unit == "m" {
-                format!("{} mm", significant(1000.0 * bias, 3))
+                format!("{} {head_error}", significant(head_error.from_si(*bias), 3))
             } else {
                 format!("{} {unit}", significant(*bias, 3))
             };

@@ -12,7 +12,6 @@ use super::source::{self, ErrorSource};
 use super::spread::Spread;
 use super::structure::{self, Kind, StationInput, StructureSection};
 use crate::diagnostic::{Code, Diagnostic, Severity, Span, Warning};
-use crate::model::structures::PUBLISHED_COEFFICIENT;
 use crate::propagation::{Correlation, Distribution, Problem, Source, impossible};
 
 /// A station, read and checked.
@@ -276,9 +275,11 @@ fn tables<'a, 'i>(
 /// Names of the sources that a structure brings with it.
 fn automatic_names(kind: &Kind) -> Vec<String> {
     match kind {
-        Kind::Catalogue(structure) => std::iter::once(PUBLISHED_COEFFICIENT)
-            .chain(structure.adjustments.iter().map(|adjustment| adjustment.name))
-            .map(str::to_owned)
+        // All forms of a structure bring the same ones.
+        Kind::Catalogue(structure) => structure
+            .automatic_sources(&structure.regimes[0])
+            .iter()
+            .map(|source| source.name.to_owned())
             .collect(),
         Kind::Own(_) => Vec::new(),
     }

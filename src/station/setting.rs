@@ -7,7 +7,7 @@ use super::size::Size;
 use super::source::ErrorSource;
 use super::structure::{Evidence, Kind, StationInput, mean, standard_deviation};
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{PUBLISHED_COEFFICIENT, Regime, Structure, Values};
+use crate::model::structures::{AutomaticSource, Regime, Structure, Values};
 use crate::model::{Citation, Confidence, Fault, Model, Outcome};
 use crate::propagation::{Action, Correlation, Distribution, Effect, Problem, Source};
 
@@ -178,26 +178,15 @@ impl Station {
     ) {
         let replaced =
             |name: &str| self.sources.iter().any(|source| source.replaces.as_deref() == Some(name));
-        let mut automatic = vec![(
-            PUBLISHED_COEFFICIENT,
-            "coefficient_factor",
-            form.coefficient.percent,
-            form.coefficient.words,
-            (form.coefficient.source, form.coefficient.confidence),
-            true,
-        )];
-        automatic.extend(structure.adjustments.iter().map(|each| {
-            let published = (each.source, each.confidence);
-            (each.name, each.acts_on, each.standard_uncertainty, each.words, published, false)
-        }));
-        for (name, acts_on, rule, words, published, is_percent) in automatic {
+        for automatic in structure.automatic_sources(form) {
+            let AutomaticSource { name, acts_on, rule, scales, words, published } = automatic;
             let Some(input) = model.input(acts_on).filter(|_| !replaced(name)) else { continue };
             let Ok((rule, _)) = model.expression(rule) else { continue };
             let (values, _) = model.evaluate(&[rule], corrected);
             // Published at 95 %: half of it is the standard uncertainty, and per cent are hundredths.
-            let standard_uncertainty = values[0] * if is_percent { 0.5 / 100.0 } else { 1.0 };
-            let action = if is_percent { Action::Scale } else { Action::Shift { gain: 1.0 } };
-            let size = if is_percent {
+            let standard_uncertainty = values[0] * if scales { 0.5 / 100.0 } else { 1.0 };
+            let action = if scales { Action::Scale } else { Action::Shift { gain: 1.0 } };
+            let size = if scales {
                 format!("{} % at 95 %", round_digits(values[0]))
             } else {
                 words.to_owned()
@@ -210,8 +199,8 @@ impl Station {
             });
             rows.push(SourceRow {
                 acts_on: vec![acts_on.to_owned()],
-                scales: is_percent,
-                unit: if is_percent { "1".to_owned() } else { "m".to_owned() },
+                scales,
+                unit: if scales { "1".to_owned() } else { "m".to_owned() },
                 size,
                 fixed_until: "rebuilding".to_owned(),
                 evidence: Evidence::default(),

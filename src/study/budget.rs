@@ -1,13 +1,15 @@
 //! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{PUBLISHED_COEFFICIENT, Regime, Structure};
+use crate::model::structures::PUBLISHED_COEFFICIENT;
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
-use crate::propagation::{Agreement, Coverage, DegreesOfFreedom, Linear, Share, linear, shares};
+use crate::propagation::{Agreement, Coverage, Linear, Share, linear, shares};
 use crate::station::{Evidence, Kind, Refusal, Setting, Station};
 use crate::units::{Unit, significant};
 
+use super::at::{At, find_head};
 use super::limits::{LimitState, limit_states, limit_warnings};
+use super::warnings::{freedom_warning, memory_warning, table_warnings, trial_warnings};
 
 /// What is asked.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -22,17 +24,6 @@ pub struct Question {
     pub seed: u64,
     /// The month of the year, 1 to 12, for sources that are there in some months only.
     pub month: Option<u32>,
-}
-
-/// At which head a budget is drawn up.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum At {
-    /// The middle of the range of heads; no head where the equation reads none.
-    Middle,
-    /// An indicated head, m.
-    Head(f64),
-    /// The indicated head at which the corrected result has this value, m3/s.
-    Flow(f64),
 }
 
 /// The answer.
@@ -203,7 +194,7 @@ pub fn budget(
     question: &Question,
     progress: &(dyn Fn(u64) + Sync),
 ) -> Result<Budget, Refusal> {
-    let head = find_head(station, question)?;
+    let head = find_head(station, question.at, question.month)?;
     let mut setting = station.at(head, question.month)?;
     let corrected = setting.problem.corrected();
     let linear = linear(&mut setting.problem).swap_remove(0);
@@ -257,62 +248,6 @@ pub fn budget(
         warnings,
         linear,
     })
-}
-
-/// The indicated head that is asked about.
-fn find_head(station: &Station, question: &Question) -> Result<Option<f64>, Refusal> {
-    match question.at {
-        At::Head(head) => Ok(Some(head)),
-        At::Flow(flow) => head_for_flow(station, flow, question.month).map(Some),
-        At::Middle => match &station.head {
-            None => Ok(None),
-            Some(head) => match &head.range {
-                Some([low, high]) => Ok(Some(f64::midpoint(low.value, high.value))),
-                None => Err(Refusal::NoHead),
-            },
-        },
-    }
-}
-
-/// Heads beyond these are none that a station shows.
-const HIGHEST_HEAD: f64 = 20.0;
-const LOWEST_HEAD: f64 = -5.0;
-
-/// The indicated head at which the corrected result is `flow`, by bisection: the result grows with the
-/// head, but may jump where the form of the equation changes.
-fn head_for_flow(station: &Station, flow: f64, month: Option<u32>) -> Result<f64, Refusal> {
-    if station.head.is_none() {
-        return Err(Refusal::HeadNotRead);
-    }
-    let flow_at = |head: f64| -> Result<f64, Refusal> {
-        let mut setting = station.at(Some(head), month)?;
-        let corrected = setting.problem.corrected();
-        let outputs = setting.problem.outputs.clone();
-        Ok(setting.problem.model.evaluate(&outputs, &corrected).0[0])
-    };
-    let range = station.head.as_ref().and_then(|head| head.range.as_ref());
-    let mut high = range.map_or(1.0, |[_, high]| high.value.max(1e-3));
-    while !(flow_at(high)? >= flow) {
-        // Beyond the last head with a solution the flow is NaN, and so is all above.
-        if high >= HIGHEST_HEAD || flow_at(high)?.is_nan() {
-            return Err(Refusal::NoHeadForFlow { flow, highest: high });
-        }
-        high = (high * 1.5).min(HIGHEST_HEAD);
-    }
-    // With a zero above the crest water flows at indicated heads below 0.
-    let mut low = LOWEST_HEAD;
-    for _ in 0..100 {
-        let middle = f64::midpoint(low, high);
-        if middle <= low || middle >= high {
-            break;
-        }
-        if flow_at(middle)? < flow {
-            low = middle;
-        } else {
-            high = middle;
-        }
-    }
-    Ok(high)
 }
 
 fn kind_words(station: &Station) -> (String, String, String) {
@@ -454,135 +389,6 @@ fn run_monte_carlo(
     }
     let part = MonteCarloPart { result, agreement, base_trials: shares.base_trials };
     Some((part, shares.sources))
-}
-
-fn trial_warnings(result: &MonteCarlo) -> Vec<Warning> {
-    let share = |count: u64| {
-        let percent = 100.0 * count as f64 / result.trials as f64;
-        format!("in {count} of {} trials ({} %)", result.trials, significant(percent, 3))
-    };
-    let mut warnings = Vec::new();
-    if result.tally.dry > 0 {
-        let text =
-            format!("{} no water passes the crest; the result is 0 there", share(result.tally.dry));
-        warnings.push(Warning::new(Code::TrialsWithoutFlow, text));
-    }
-    if result.tally.outside_table > 0 {
-        let text = format!(
-            "{} a published table or curve is left; its end value is held",
-            share(result.tally.outside_table)
-        );
-        warnings.push(Warning::new(Code::TrialsOutsideTable, text));
-    }
-    if result.tally.undefined > 0 {
-        let text = format!(
-            "{} the equation has no value; they are left out, and the interval is too narrow",
-            share(result.tally.undefined)
-        );
-        warnings.push(Warning::new(Code::TrialsUndefined, text));
-    }
-    if !result.settled {
-        let text = format!(
-            "after {} trials the figures have not settled to two digits; take the interval with care",
-            result.trials
-        );
-        warnings.push(Warning::new(Code::NotSettled, text));
-    }
-    warnings
-}
-
-fn freedom_warning(linear: &Linear) -> Option<Warning> {
-    (linear.degrees_of_freedom == DegreesOfFreedom::Undefined).then(|| {
-        Warning::new(
-            Code::DegreesOfFreedomUndefined,
-            "correlated sources have finite degrees of freedom, for which JCGM 100 has no rule \
-             (JCGM 101 5.7.2): the coverage factor is that of a normal distribution",
-        )
-    })
-}
-
-/// Whether the corrected values lie at a node of a published table, or outside one.
-fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Warning> {
-    let varies: Vec<bool> =
-        (0..corrected.len()).map(|input| setting.problem.varies(input)).collect();
-    let model = &mut setting.problem.model;
-    let mut warnings = Vec::new();
-    for (table, arguments) in model.look_ups() {
-        let (values, _) = model.evaluate(&arguments, corrected);
-        let table = model.table(table);
-        let name = table.name().to_owned();
-        let places = table.axes().into_iter().zip(&values).take(table.arguments());
-        // A value that is the same in every trial has no slope to jump.
-        let varying = arguments.map(|id| model.inputs_of(id).iter().any(|input| varies[*input]));
-        for ((axis, value), varies) in places.zip(varying) {
-            if axis.excludes(*value) {
-                let text = format!(
-                    "the published table {name} ends before {}: its end value is held",
-                    significant(*value, 4)
-                );
-                warnings.push(Warning::new(Code::TableEndHeld, text));
-            } else if varies && axis.has_node_at(*value) {
-                let text = format!(
-                    "{} is a node of the published table {name}, where the slope jumps: the \
-                     sensitivity is that of the segment above",
-                    significant(*value, 4)
-                );
-                warnings.push(Warning::new(Code::TableNode, text));
-            }
-        }
-    }
-    warnings
-}
-
-/// Which published numbers behind the result are quoted from memory.
-fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option<Warning> {
-    let (structure, regime) = setting.regime?;
-    let mut from_memory: Vec<String> = memory_numbers(structure, regime);
-    for row in &setting.problem.sources {
-        let published = setting
-            .rows
-            .iter()
-            .zip(&setting.problem.sources)
-            .find(|(_, source)| source.name == row.name)
-            .and_then(|(row, _)| row.published);
-        if published.is_some_and(|(_, confidence)| confidence.is_memory()) {
-            from_memory.push(format!("the uncertainty of `{}`", row.name));
-        }
-    }
-    if limits.iter().any(|limit| limit.from_memory) {
-        from_memory.push("limits of use".to_owned());
-    }
-    (!from_memory.is_empty()).then(|| {
-        Warning::new(
-            Code::FromMemory,
-            format!(
-                "quoted from memory, confirm against your copy of {}: {}",
-                structure.standard.document,
-                from_memory.join(", ")
-            ),
-        )
-    })
-}
-
-/// Constants and tables that the equation of a regime uses and that are quoted from memory.
-fn memory_numbers(structure: &Structure, regime: &Regime) -> Vec<String> {
-    let uses = |name: &str| {
-        let words = regime.definitions.iter().flat_map(|(_, text)| {
-            text.split(|c: char| !(c.is_alphanumeric() || c == '_')).collect::<Vec<_>>()
-        });
-        words.into_iter().any(|word| word == name)
-    };
-    let constants = structure
-        .constants
-        .iter()
-        .filter(|each| each.confidence.is_memory() && uses(each.symbol))
-        .map(|each| each.meaning.to_owned());
-    let tables = structure
-        .tables
-        .iter()
-        .filter(|each| each.confidence.is_memory() && uses(each.name))
-        .map(|each| format!("table {}", each.name));
-    constants.chain(tables).collect()
 }
 
 fn rows(

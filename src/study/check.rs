@@ -68,7 +68,8 @@ pub fn check(station: &Station) -> Check {
     let replaced = station.sources.iter().filter(|source| source.replaces.is_some()).count();
     let (kind, automatic_sources, stated_unit) = match &station.kind {
         Kind::Catalogue(structure) => {
-            (structure.kind.to_owned(), 1 + structure.adjustments.len() - replaced, None)
+            let brought = structure.automatic_sources(&structure.regimes[0]).len();
+            (structure.kind.to_owned(), brought.saturating_sub(replaced), None)
         }
         Kind::Own(equation) => ("equation".to_owned(), 0, Some(equation.unit.clone())),
     };

@@ -58,7 +58,9 @@ fn station_files_in_the_documents_read_without_error() {
     for name in ["README.md", "docs/station-file.md"] {
         let text = document(name);
         let blocks = text.split("```toml\n").skip(1).filter_map(|rest| rest.split("```").next());
-        for block in blocks.filter(|block| block.contains("[structure]") && block.contains("name = ")) {
+        for block in
+            blocks.filter(|block| block.contains("[structure]") && block.contains("name = "))
+        {
             let (station, findings) = nappe::station::read(block.as_bytes());
             assert!(station.is_some() && findings.is_empty(), "{name}: {findings:#?}\n{block}");
             count += 1;

@@ -293,7 +293,48 @@ const PUBLISHED_HEAD_ADJUSTMENT: Adjustment = Adjustment {
 /// The name of the error source of the coefficient.
 pub const PUBLISHED_COEFFICIENT: &str = "published coefficient";
 
+/// An error source that a structure brings with it.
+#[derive(Clone, Copy, Debug)]
+pub struct AutomaticSource {
+    /// Its name.
+    pub name: &'static str,
+    /// The input that it acts on.
+    pub acts_on: &'static str,
+    /// Its size, in the symbols of the structure: a standard uncertainty in SI units, or, where it
+    /// scales, per cent at 95 %.
+    pub rule: &'static str,
+    /// It scales its input.
+    pub scales: bool,
+    /// The rule in words.
+    pub words: &'static str,
+    /// Who published it, and how well that is known here.
+    pub published: (Citation, Confidence),
+}
+
 impl Structure {
+    /// The error sources that it brings with it in a regime: the published uncertainty of its coefficient
+    /// and those of its adjustments.
+    pub fn automatic_sources(&self, regime: &Regime) -> Vec<AutomaticSource> {
+        let rule = regime.coefficient;
+        let coefficient = AutomaticSource {
+            name: PUBLISHED_COEFFICIENT,
+            acts_on: COEFFICIENT_FACTOR.key,
+            rule: rule.percent,
+            scales: true,
+            words: rule.words,
+            published: (rule.source, rule.confidence),
+        };
+        let adjustments = self.adjustments.iter().map(|each| AutomaticSource {
+            name: each.name,
+            acts_on: each.acts_on,
+            rule: each.standard_uncertainty,
+            scales: false,
+            words: each.words,
+            published: (each.source, each.confidence),
+        });
+        std::iter::once(coefficient).chain(adjustments).collect()
+    }
+
     /// All inputs: the head, the structure's own, the factor on the coefficient, gravity.
     pub fn all_inputs(&self) -> Vec<InputSpec> {
         let mut inputs = vec![HEAD];

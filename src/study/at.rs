@@ -1,0 +1,74 @@
+//! At which head a question is asked.
+
+use crate::station::{Refusal, Station};
+
+/// At which head a question is asked.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum At {
+    /// The middle of the range of heads; no head where the equation reads none.
+    Middle,
+    /// An indicated head, m.
+    Head(f64),
+    /// The indicated head at which the corrected result has this value, m3/s.
+    Flow(f64),
+}
+
+/// The indicated head that is asked about.
+pub(super) fn find_head(
+    station: &Station,
+    at: At,
+    month: Option<u32>,
+) -> Result<Option<f64>, Refusal> {
+    match at {
+        At::Head(head) => Ok(Some(head)),
+        At::Flow(flow) => head_for_flow(station, flow, month).map(Some),
+        At::Middle => match &station.head {
+            None => Ok(None),
+            Some(head) => match &head.range {
+                Some([low, high]) => Ok(Some(f64::midpoint(low.value, high.value))),
+                None => Err(Refusal::NoHead),
+            },
+        },
+    }
+}
+
+/// Heads beyond these are none that a station shows.
+const HIGHEST_HEAD: f64 = 20.0;
+const LOWEST_HEAD: f64 = -5.0;
+
+/// The indicated head at which the corrected result is `flow`, by bisection: the result grows with the
+/// head, but may jump where the form of the equation changes.
+fn head_for_flow(station: &Station, flow: f64, month: Option<u32>) -> Result<f64, Refusal> {
+    if station.head.is_none() {
+        return Err(Refusal::HeadNotRead);
+    }
+    let flow_at = |head: f64| -> Result<f64, Refusal> {
+        let mut setting = station.at(Some(head), month)?;
+        let corrected = setting.problem.corrected();
+        let outputs = setting.problem.outputs.clone();
+        Ok(setting.problem.model.evaluate(&outputs, &corrected).0[0])
+    };
+    let range = station.head.as_ref().and_then(|head| head.range.as_ref());
+    let mut high = range.map_or(1.0, |[_, high]| high.value.max(1e-3));
+    while !(flow_at(high)? >= flow) {
+        // Beyond the last head with a solution the flow is NaN, and so is all above.
+        if high >= HIGHEST_HEAD || flow_at(high)?.is_nan() {
+            return Err(Refusal::NoHeadForFlow { flow, highest: high });
+        }
+        high = (high * 1.5).min(HIGHEST_HEAD);
+    }
+    // With a zero above the crest water flows at indicated heads below 0.
+    let mut low = LOWEST_HEAD;
+    for _ in 0..100 {
+        let middle = f64::midpoint(low, high);
+        if middle <= low || middle >= high {
+            break;
+        }
+        if flow_at(middle)? < flow {
+            low = middle;
+        } else {
+            high = middle;
+        }
+    }
+    Ok(high)
+}

@@ -1,0 +1,132 @@
+//! Caveats about a budget, in words: of its trials, its degrees of freedom, its tables, its sources.
+
+use super::limits::LimitState;
+use crate::diagnostic::{Code, Warning};
+use crate::model::structures::{Regime, Structure};
+use crate::propagation::monte_carlo::MonteCarlo;
+use crate::propagation::{DegreesOfFreedom, Linear};
+use crate::station::Setting;
+use crate::units::significant;
+
+pub(super) fn trial_warnings(result: &MonteCarlo) -> Vec<Warning> {
+    let share = |count: u64| {
+        let percent = 100.0 * count as f64 / result.trials as f64;
+        format!("in {count} of {} trials ({} %)", result.trials, significant(percent, 3))
+    };
+    let mut warnings = Vec::new();
+    if result.tally.dry > 0 {
+        let text =
+            format!("{} no water passes the crest; the result is 0 there", share(result.tally.dry));
+        warnings.push(Warning::new(Code::TrialsWithoutFlow, text));
+    }
+    if result.tally.outside_table > 0 {
+        let text = format!(
+            "{} a published table or curve is left; its end value is held",
+            share(result.tally.outside_table)
+        );
+        warnings.push(Warning::new(Code::TrialsOutsideTable, text));
+    }
+    if result.tally.undefined > 0 {
+        let text = format!(
+            "{} the equation has no value; they are left out, and the interval is too narrow",
+            share(result.tally.undefined)
+        );
+        warnings.push(Warning::new(Code::TrialsUndefined, text));
+    }
+    if !result.settled {
+        let text = format!(
+            "after {} trials the figures have not settled to two digits; take the interval with care",
+            result.trials
+        );
+        warnings.push(Warning::new(Code::NotSettled, text));
+    }
+    warnings
+}
+
+pub(super) fn freedom_warning(linear: &Linear) -> Option<Warning> {
+    (linear.degrees_of_freedom == DegreesOfFreedom::Undefined).then(|| {
+        Warning::new(
+            Code::DegreesOfFreedomUndefined,
+            "correlated sources have finite degrees of freedom, for which JCGM 100 has no rule \
+             (JCGM 101 5.7.2): the coverage factor is that of a normal distribution",
+        )
+    })
+}
+
+/// Whether the corrected values lie at a node of a published table, or outside one.
+pub(super) fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Warning> {
+    let varies: Vec<bool> =
+        (0..corrected.len()).map(|input| setting.problem.varies(input)).collect();
+    let model = &mut setting.problem.model;
+    let mut warnings = Vec::new();
+    for (table, arguments) in model.look_ups() {
+        let (values, _) = model.evaluate(&arguments, corrected);
+        let table = model.table(table);
+        let name = table.name().to_owned();
+        let places = table.axes().into_iter().zip(&values).take(table.arguments());
+        // A value that is the same in every trial has no slope to jump.
+        let varying = arguments.map(|id| model.inputs_of(id).iter().any(|input| varies[*input]));
+        for ((axis, value), varies) in places.zip(varying) {
+            if axis.excludes(*value) {
+                let text = format!(
+                    "the published table {name} ends before {}: its end value is held",
+                    significant(*value, 4)
+                );
+                warnings.push(Warning::new(Code::TableEndHeld, text));
+            } else if varies && axis.has_node_at(*value) {
+                let text = format!(
+                    "{} is a node of the published table {name}, where the slope jumps: the \
+                     sensitivity is that of the segment above",
+                    significant(*value, 4)
+                );
+                warnings.push(Warning::new(Code::TableNode, text));
+            }
+        }
+    }
+    warnings
+}
+
+/// Which published numbers behind the result are quoted from memory.
+pub(super) fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option<Warning> {
+    let (structure, regime) = setting.regime?;
+    let mut from_memory: Vec<String> = memory_numbers(structure, regime);
+    for (source, row) in setting.problem.sources.iter().zip(&setting.rows) {
+        if row.published.is_some_and(|(_, confidence)| confidence.is_memory()) {
+            from_memory.push(format!("the uncertainty of `{}`", source.name));
+        }
+    }
+    if limits.iter().any(|limit| limit.from_memory) {
+        from_memory.push("limits of use".to_owned());
+    }
+    (!from_memory.is_empty()).then(|| {
+        Warning::new(
+            Code::FromMemory,
+            format!(
+                "quoted from memory, confirm against your copy of {}: {}",
+                structure.standard.document,
+                from_memory.join(", ")
+            ),
+        )
+    })
+}
+
+/// Constants and tables that the equation of a regime uses and that are quoted from memory.
+fn memory_numbers(structure: &Structure, regime: &Regime) -> Vec<String> {
+    let uses = |name: &str| {
+        let words = regime.definitions.iter().flat_map(|(_, text)| {
+            text.split(|c: char| !(c.is_alphanumeric() || c == '_')).collect::<Vec<_>>()
+        });
+        words.into_iter().any(|word| word == name)
+    };
+    let constants = structure
+        .constants
+        .iter()
+        .filter(|each| each.confidence.is_memory() && uses(each.symbol))
+        .map(|each| each.meaning.to_owned());
+    let tables = structure
+        .tables
+        .iter()
+        .filter(|each| each.confidence.is_memory() && uses(each.name))
+        .map(|each| format!("table {}", each.name));
+    constants.chain(tables).collect()
+}
