@@ -161,7 +161,7 @@ fn combine(
 fn slope(problem: &Problem, corrected: &[f64], effect: super::Effect, mean: f64) -> f64 {
     match effect.action {
         Action::Scale => corrected[effect.input] / (1.0 - mean),
-        Action::Shift { gain } => {
+        Action::Shift { gain, .. } => {
             let scales: f64 = problem
                 .sources
                 .iter()

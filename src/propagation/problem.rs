@@ -29,10 +29,13 @@ pub struct Effect {
 /// How an error `e` makes an input wrong.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub enum Action {
-    /// indicated = true + gain e
+    /// indicated = true + offset + gain e
     Shift {
         /// Unit of the input for each unit of the error.
         gain: f64,
+        /// What this input is wrong by besides, whatever the error: a known bias that does not go with
+        /// the gain.
+        offset: f64,
     },
     /// The true value is the indicated one times (1 - e).
     Scale,
@@ -69,7 +72,9 @@ impl Problem {
         for (index, source) in self.sources.iter().enumerate() {
             for effect in &source.effects {
                 match effect.action {
-                    Action::Shift { gain } => values[effect.input] -= gain * error(index),
+                    Action::Shift { gain, offset } => {
+                        values[effect.input] -= offset + gain * error(index);
+                    }
                     Action::Scale => factors[effect.input] *= 1.0 - error(index),
                 }
             }

@@ -50,6 +50,9 @@ pub struct SourceRow {
     pub is_correction: bool,
 }
 
+/// A shift by the error itself.
+const PLAIN_SHIFT: Action = Action::Shift { gain: 1.0, offset: 0.0 };
+
 /// The name of the correction that `[head] zero_above_crest` makes.
 pub(super) const SURVEYED_ZERO: &str = "surveyed zero";
 
@@ -185,7 +188,7 @@ impl Station {
             let (values, _) = model.evaluate(&[rule], corrected);
             // Published at 95 %: half of it is the standard uncertainty, and per cent are hundredths.
             let standard_uncertainty = values[0] * if scales { 0.5 / 100.0 } else { 1.0 };
-            let action = if scales { Action::Scale } else { Action::Shift { gain: 1.0 } };
+            let action = if scales { Action::Scale } else { PLAIN_SHIFT };
             let size = if scales {
                 format!("{} % at 95 %", round_digits(values[0]))
             } else {
@@ -322,9 +325,9 @@ impl Builder<'_> {
                 input: *input,
                 action: match stated.kind {
                     Size::Scale => Action::Scale,
-                    Size::Shift => Action::Shift { gain: 1.0 },
+                    Size::Shift => PLAIN_SHIFT,
                     // The size depends on the input's value: the others move in proportion to theirs.
-                    Size::Mixed => Action::Shift { gain: self.gain(stated, *input) },
+                    Size::Mixed => self.mixed_shift(stated, *input),
                 },
             })
             .collect();
@@ -347,15 +350,17 @@ impl Builder<'_> {
         });
     }
 
-    /// How many times as large the error of an input is as that of the source's first input.
-    fn gain(&self, stated: &ErrorSource, input: usize) -> f64 {
-        let size = |input: usize| {
-            let value = self.indicated[input];
-            let distribution = stated.distribution(value);
-            distribution.standard_uncertainty().max(distribution.mean().abs())
-        };
-        let first = size(stated.inputs[0]);
-        if first > 0.0 { size(input) / first } else { 1.0 }
+    /// How an input goes with a source whose size depends on each input's value: its spread in proportion,
+    /// its bias as its own sum says.
+    fn mixed_shift(&self, stated: &ErrorSource, input: usize) -> Action {
+        let of = |input: usize| stated.distribution(self.indicated[input]);
+        let (first, this) = (of(stated.inputs[0]), of(input));
+        let spread = first.standard_uncertainty();
+        let gain = if spread > 0.0 { this.standard_uncertainty() / spread } else { 0.0 };
+        if input == stated.inputs[0] {
+            return PLAIN_SHIFT;
+        }
+        Action::Shift { gain, offset: this.mean() - gain * first.mean() }
     }
 
     fn unit(&self, input: usize, scales: bool) -> String {
@@ -369,7 +374,7 @@ impl Builder<'_> {
         let (Some(zero), Some(input)) = (head, place) else { return };
         self.sources.push(Source {
             name: SURVEYED_ZERO.to_owned(),
-            effects: vec![Effect { input, action: Action::Shift { gain: 1.0 } }],
+            effects: vec![Effect { input, action: PLAIN_SHIFT }],
             distribution: Distribution::Fixed { mean: -zero.value },
             degrees_of_freedom: f64::INFINITY,
         });
@@ -398,7 +403,7 @@ impl Builder<'_> {
             let degrees_of_freedom = count as f64 - 1.0;
             self.sources.push(Source {
                 name: observations_name(stated),
-                effects: vec![Effect { input, action: Action::Shift { gain: 1.0 } }],
+                effects: vec![Effect { input, action: PLAIN_SHIFT }],
                 distribution: Distribution::ScaledT { mean: 0.0, scale, degrees_of_freedom },
                 degrees_of_freedom,
             });

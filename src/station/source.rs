@@ -106,9 +106,9 @@ impl ErrorSource {
     pub fn distribution(&self, value: f64) -> Distribution {
         let plain = match &self.spread {
             Spread::Shape(shape, width) => match width {
-                Width::Standard(u) => shape.with_standard_uncertainty(u.at(value)),
+                Width::Standard(u) => shape.with_standard_uncertainty(u.at(value), value),
                 Width::Expanded(expanded, k) => {
-                    shape.with_standard_uncertainty(expanded.at(value) / k)
+                    shape.with_standard_uncertainty(expanded.at(value) / k, value)
                 }
                 Width::Half(half) => shape.with_half_width(0.0, half.at(value), value),
                 Width::Step(step) => shape.with_half_width(0.0, step.at(value) / 2.0, value),
@@ -164,10 +164,8 @@ pub(super) fn read(
         Some((inputs, _)) => read_acts_on(&mut section, inputs, findings),
         None => section.get("acts_on").and(None),
     };
-    let dimension = acts_on
-        .as_ref()
-        .zip(structure)
-        .map(|(places, (inputs, _))| common_dimension(places, inputs, &section, findings));
+    let dimension =
+        acts_on.as_ref().zip(structure).map(|(places, (inputs, _))| inputs[places[0]].dimension);
     let replaces = match structure {
         Some((_, automatic)) => read_replaces(&mut section, automatic, findings),
         None => section.get("replaces").and(None),
@@ -183,11 +181,18 @@ pub(super) fn read(
         section: &mut section,
         dimension,
         findings,
-        freedom: freedom.as_ref().map(|f| f.0),
+        // A judgement of how reliable a size is does not change what its maker stated.
+        freedom: freedom.as_ref().map(|f| f.0).filter(|_| !reliable),
         fixed_until,
     }
     .read(bias.is_some());
+    let acts_on_span = section.key_span("acts_on").unwrap_or_else(|| section.span.clone());
     section.finish(findings);
+    if let (Some(places), Some((inputs, _)), Some(size)) = (&acts_on, structure, &size)
+        && size.kind != Some(Size::Scale)
+    {
+        check_dimensions(places, inputs, acts_on_span, findings);
+    }
     let (name, span) = name?;
     let (mut size, places) = (size?, acts_on?);
     if findings.list.len() > before {
@@ -203,7 +208,9 @@ pub(super) fn read(
         size.text = format!("{}, {text}", size.text);
     }
     if let Some((_, amount)) = &bias {
-        let kinds_differ = size.kind.is_some_and(|kind| kind != amount.kind());
+        // A sum shifts as a plain size does; only a scale is another kind.
+        let scales = |kind: Size| kind == Size::Scale;
+        let kinds_differ = size.kind.is_some_and(|kind| scales(kind) != scales(amount.kind()));
         if kinds_differ || matches!(size.spread, Spread::Limits(..) | Spread::Observed { .. }) {
             findings.push(
                 Diagnostic::error(
@@ -317,33 +324,30 @@ fn unknown_input(key: &str, span: Span, inputs: &[StationInput], findings: &mut 
     });
 }
 
-/// The dimension that all inputs of a source share; a size in per cent does not need one.
-fn common_dimension(
+/// One error shifts inputs of one dimension; a scale is a pure number for any.
+fn check_dimensions(
     places: &[usize],
     inputs: &[StationInput],
-    section: &Section<'_, '_>,
+    span: Span,
     findings: &mut Findings<'_>,
-) -> Dimension {
+) {
     let first = &inputs[places[0]];
-    let other = places.iter().map(|place| &inputs[*place]).find(|i| i.dimension != first.dimension);
-    if let Some(other) = other {
-        let span = section.key_span("acts_on").unwrap_or_else(|| section.span.clone());
-        findings.push(
-            Diagnostic::error(
-                Code::WrongDimension,
-                span,
-                format!(
-                    "one source acts on `{}`, {}, and `{}`, {}",
-                    first.key,
-                    first.dimension.described(),
-                    other.key,
-                    other.dimension.described()
-                ),
-            )
-            .help("one error shifts inputs of one dimension; write two sources and correlate them"),
-        );
-    }
-    first.dimension
+    let mut others = places.iter().map(|place| &inputs[*place]);
+    let Some(other) = others.find(|input| input.dimension != first.dimension) else { return };
+    findings.push(
+        Diagnostic::error(
+            Code::WrongDimension,
+            span,
+            format!(
+                "one source shifts `{}`, {}, and `{}`, {}",
+                first.key,
+                first.dimension.described(),
+                other.key,
+                other.dimension.described()
+            ),
+        )
+        .help("write two sources and correlate them, or state the size in %"),
+    );
 }
 
 fn read_replaces(

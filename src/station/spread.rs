@@ -86,10 +86,17 @@ impl Shape {
         }
     }
 
-    /// The distribution with a standard uncertainty, for shapes that one number fixes.
-    pub(super) fn with_standard_uncertainty(&self, u: f64) -> Distribution {
-        let unit = self.with_half_width(0.0, 1.0, 0.0).standard_uncertainty();
-        self.with_half_width(0.0, u / unit, 0.0)
+    /// The distribution with a standard uncertainty: the half-width that gives it.
+    pub(super) fn with_standard_uncertainty(&self, u: f64, value: f64) -> Distribution {
+        let half_width = match self {
+            // u^2 = (a^2 + f^2)/6 and u^2 = a^2/3 + d^2/9, solved for a.
+            Self::Trapezoidal(flat) => (6.0 * u * u - flat.at(value).powi(2)).max(0.0).sqrt(),
+            Self::CurvilinearTrapezoid(limit) => {
+                (3.0 * u * u - limit.at(value).powi(2) / 3.0).max(0.0).sqrt()
+            }
+            _ => u / self.with_half_width(0.0, 1.0, value).standard_uncertainty(),
+        };
+        self.with_half_width(0.0, half_width, value)
     }
 }
 

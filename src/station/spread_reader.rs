@@ -9,7 +9,7 @@ use super::source::{FixedUntil, round_to, unknown_word};
 use super::spread::{Shape, Spread, Width};
 use super::structure::{mean, read_observations, standard_deviation};
 use crate::diagnostic::{Code, Diagnostic, Span};
-use crate::propagation::{Coverage, DegreesOfFreedom};
+use crate::propagation::{Coverage, DegreesOfFreedom, Distribution};
 use crate::units::{Dimension, Quantity};
 
 /// Keys that state a size; just one of them is due.
@@ -80,10 +80,9 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
             ["standard_uncertainty"] => {
                 let amount = self.amount("standard_uncertainty")?;
                 let shape = shape?.unwrap_or(Shape::Normal);
-                if matches!(shape, Shape::Trapezoidal(_) | Shape::CurvilinearTrapezoid(_)) {
-                    self.missing_half_width(&shape);
-                    return None;
-                }
+                // The inner width must fit the half-width that the uncertainty gives.
+                let outer = shape.with_standard_uncertainty(amount.at(1.0), 1.0);
+                self.check_inner_width(&shape, &amount, half_width_of(&outer))?;
                 let text = format!("standard uncertainty {}, {}", amount.text, shape.word());
                 Some(shaped(shape, amount, Width::Standard, text))
             }
@@ -98,7 +97,7 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
                     self.normal_has_no_limits();
                     return None;
                 }
-                self.check_inner_width(&shape, &amount)?;
+                self.check_inner_width(&shape, &amount, amount.at(1.0))?;
                 let text = format!("half-width {}, {}", amount.text, shape.word());
                 Some(shaped(shape, amount, Width::Half, text))
             }
@@ -161,11 +160,6 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
                  \"rectangular\" where nothing more is known",
             ),
         );
-    }
-
-    fn missing_half_width(&mut self, shape: &Shape) {
-        let title = format!("a {} shape needs `half_width`", shape.word());
-        self.missing("half_width", &title);
     }
 
     fn normal_has_no_limits(&mut self) {
@@ -239,15 +233,18 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
     }
 
     /// The inner width of a trapezoid lies inside the outer one, and is stated in the same way.
-    fn check_inner_width(&mut self, shape: &Shape, outer: &Amount) -> Option<()> {
+    fn check_inner_width(&mut self, shape: &Shape, outer: &Amount, half_width: f64) -> Option<()> {
         let (key, inner) = match shape {
             Shape::Trapezoidal(inner) => ("flat_half_width", inner),
             Shape::CurvilinearTrapezoid(inner) => ("limit_half_width", inner),
             _ => return Some(()),
         };
-        let fits = inner.kind() == outer.kind()
-            && outer.kind() != Size::Mixed
-            && inner.at(1.0) <= outer.at(1.0);
+        // A flat top may be as wide as the limits; limits known to within their width say nothing.
+        let below = match shape {
+            Shape::CurvilinearTrapezoid(_) => inner.at(1.0) < half_width,
+            _ => inner.at(1.0) <= half_width,
+        };
+        let fits = inner.kind() == outer.kind() && outer.kind() != Size::Mixed && below;
         if fits {
             return Some(());
         }
@@ -335,7 +332,7 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
             relative: from.relative.zip(to.relative).map(|(a, b)| (b - a) / 2.0),
             text: String::new(),
         };
-        self.check_inner_width(&shape, &half)?;
+        self.check_inner_width(&shape, &half, half.at(1.0))?;
         let text = format!("error from {} to {}, {}", from.text, to.text, shape.word());
         let kind = Some(from.kind());
         Some(ReadSize { spread: Spread::Limits(shape, from, to), kind, text, freedom: None })
@@ -413,6 +410,15 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
         let probabilities = weights.iter().map(|weight| weight / sum).collect();
         let text = format!("table of {} errors", errors.len());
         Some(ReadSize { spread: Spread::Table(errors, probabilities), kind, text, freedom: None })
+    }
+}
+
+/// The half-width of a distribution that has one.
+fn half_width_of(distribution: &Distribution) -> f64 {
+    match distribution {
+        Distribution::Trapezoidal { half_width, .. }
+        | Distribution::CurvilinearTrapezoid { half_width, .. } => *half_width,
+        _ => f64::INFINITY,
     }
 }
 

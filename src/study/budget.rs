@@ -450,7 +450,7 @@ fn head_uncertainty(setting: &Setting, place: usize, corrected: &[f64]) -> Optio
     let effect = source.effects.iter().find(|effect| effect.input == head)?;
     let u = source.distribution.standard_uncertainty();
     Some(match effect.action {
-        Action::Shift { gain } => (gain * u).abs(),
+        Action::Shift { gain, .. } => (gain * u).abs(),
         Action::Scale => (corrected[head] * u).abs(),
     })
 }

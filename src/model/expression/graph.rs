@@ -153,6 +153,9 @@ impl Extremum {
     }
 }
 
+/// Relative room for the rounding of a quotient or two.
+const ROUNDING: f64 = 1e-12;
+
 /// How two values are compared.
 #[derive(Clone, Copy, Debug, PartialEq, Eq, Hash)]
 pub enum Relation {
@@ -163,12 +166,14 @@ pub enum Relation {
 }
 
 impl Relation {
-    /// Whether it holds.
+    /// Whether it holds. Sides that are equal to rounding are equal: a head of 0.525 m over a crest of
+    /// 0.35 m is at a limit of 1.5, though the quotient of the two is not 1.5 to the last bit.
     #[inline]
     pub fn holds(self, left: f64, right: f64) -> bool {
+        let equal = (left - right).abs() <= ROUNDING * left.abs().max(right.abs());
         match self {
-            Self::Below => left < right,
-            Self::AtMost => left <= right,
+            Self::Below => left < right && !equal,
+            Self::AtMost => left <= right || equal,
         }
     }
 }

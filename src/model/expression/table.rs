@@ -39,27 +39,35 @@ impl Axis {
     /// The argument is beyond either end. A single node has no beyond.
     #[inline]
     pub fn excludes(&self, at: f64) -> bool {
-        self.0.len() > 1 && !(self.0[0]..=self.0[self.0.len() - 1]).contains(&at)
+        let room = room(at);
+        self.0.len() > 1 && !(self.0[0] - room..=self.0[self.0.len() - 1] + room).contains(&at)
     }
 
     /// The argument is a node, to rounding.
     pub fn has_node_at(&self, at: f64) -> bool {
-        self.0.len() > 1 && self.0.iter().any(|node| (node - at).abs() <= 1e-12 * node.abs())
+        self.0.len() > 1 && self.0.iter().any(|node| (node - at).abs() <= room(at))
     }
 
     fn place(&self, at: f64) -> Place {
         let last = self.0.len() - 1;
-        if last == 0 || !(at >= self.0[0]) {
+        let room = room(at);
+        if last == 0 || !(at >= self.0[0] - room) {
             return Place { index: 0, share: 0.0, per_width: 0.0 };
         }
-        if at > self.0[last] {
+        if at > self.0[last] + room {
             return Place { index: last - 1, share: 1.0, per_width: 0.0 };
         }
         // Counting has no branches to mispredict: published tables have few nodes.
-        let index = self.0[1..last].iter().filter(|node| **node <= at).count();
+        let index = self.0[1..last].iter().filter(|node| **node <= at + room).count();
         let width = self.0[index + 1] - self.0[index];
         Place { index, share: (at - self.0[index]) / width, per_width: 1.0 / width }
     }
+}
+
+/// An argument this near to a node is at it: a quotient such as 0.16/0.4 misses 0.4 by a bit.
+#[inline]
+fn room(at: f64) -> f64 {
+    1e-12 * at.abs()
 }
 
 impl Table {

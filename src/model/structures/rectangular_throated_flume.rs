@@ -58,8 +58,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             Limit::at_least("b", 0.10, "throat width").by(ISO_4359, Confidence::Memory),
             Limit::at_most("h/b", 3.0, "head over throat width").by(ISO_4359, Confidence::Memory),
             Limit::at_most("h/L", 0.67, "head over throat length").by(ISO_4359, Confidence::Memory),
-            Limit::at_most("b*h/A", 0.7, "throat area over approach area")
-                .by(ISO_4359, Confidence::Memory),
+            Limit::at_most(
+                "min(b*h/A/0.7, Q/(A*sqrt(g*A/B))/0.5)",
+                1.0,
+                "the smaller of area ratio over 0.7 and Froude number of the approach over 0.5",
+            )
+            .by(ISO_4359, Confidence::Memory),
         ],
         coefficient: CoefficientRule {
             words: "at 95 %: 1 + 20 (C_V - C_D) per cent; 2 per cent more where h/L is above 0.5",

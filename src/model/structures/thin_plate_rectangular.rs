@@ -86,9 +86,10 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "contracted",
             when: "the crest is narrower than the approach channel",
             definitions: &[
-                ("C_e", "a(b/B) + c(b/B)*h/p"),
+                ("r_b", "b/B"),
+                ("C_e", "a(r_b) + c(r_b)*h/p"),
                 ("k_h", "k_h_published + dk_h"),
-                ("k_b", "k_chart(b/B) + dk_b"),
+                ("k_b", "k_chart(r_b) + dk_b"),
                 ("b_e", "b + k_b"),
                 ("h_e", "h + k_h"),
                 ("Q", "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5"),
@@ -110,7 +111,8 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "full width",
             when: "approach_width is left out or equals crest_width: one pair of walls",
             definitions: &[
-                ("C_e", "a(1) + c(1)*h/p"),
+                ("r_b", "1"),
+                ("C_e", "a(r_b) + c(r_b)*h/p"),
                 ("k_h", "k_h_published + dk_h"),
                 ("k_b", "k_b_full + dk_b"),
                 ("b_e", "b + k_b"),
@@ -133,7 +135,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         Adjustment {
             name: "published width adjustment",
             acts_on: "width_adjustment",
-            standard_uncertainty: "0.00015 when b <= 0.8*B otherwise 0.00015 when B <= b otherwise 0.00052",
+            standard_uncertainty: "0.00015 when r_b <= 0.8 otherwise 0.00015 when 1 <= r_b otherwise 0.00052",
             words: "0.3 mm at 95 % for k_b; where 0.8 < b/B < 1 the chart is interpolated over its \
                     steepest part and 1 mm at 95 % is added (0.52 mm standard)",
             source: ISO_1438,

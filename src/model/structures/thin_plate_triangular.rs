@@ -14,6 +14,8 @@ const ANGLES: &[f64] = &[20.0, 30.0, 40.0, 50.0, 60.0, 70.0, 80.0, 90.0, 100.0];
 const DEGREE: f64 = std::f64::consts::PI / 180.0;
 /// A notch this near to a right angle counts as one for partial contraction.
 const RIGHT_ANGLE_TOLERANCE: f64 = 1.0;
+/// Relative room for the rounding of a quotient.
+const ROUNDING: f64 = 1e-12;
 
 pub(super) static STRUCTURE: Structure = Structure {
     kind: "thin-plate-triangular",
@@ -92,7 +94,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     regimes: &[
         Regime {
             name: "fully contracted",
-            when: "h/p <= 0.4, h/B <= 0.2, p >= 0.45 m, B >= 0.90 m and h <= 0.38 m; and for every \
+            when: "h/p <= 0.4, h/B <= 0.2, p >= 0.45 m and B >= 0.90 m; and for every \
                    other notch that is not within 1 degree of 90",
             definitions: &[
                 ("C_e", "C_chart(theta)"),
@@ -165,7 +167,9 @@ pub(super) static STRUCTURE: Structure = Structure {
 /// and no trial changes it.
 fn regime_for(values: &Values<'_>) -> usize {
     let [h, p, width] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
-    let full = h / p <= 0.4 && h / width <= 0.2 && p >= 0.45 && width >= 0.90 && h <= 0.38;
+    let at_most = |value: f64, bound: f64| value <= bound * (1.0 + ROUNDING);
+    let full =
+        at_most(h / p, 0.4) && at_most(h / width, 0.2) && at_most(0.45, p) && at_most(0.90, width);
     let degrees = values.value("notch_angle") / DEGREE;
     let right = (degrees - 90.0).abs() <= RIGHT_ANGLE_TOLERANCE + 1e-9;
     usize::from(!full && right)

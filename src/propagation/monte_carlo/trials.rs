@@ -144,8 +144,11 @@ impl<'p> Sampler<'p> {
                     for effect in source.effects.iter().filter(|effect| effect.input == input) {
                         let errors = errors(index);
                         match effect.action {
-                            Action::Shift { gain } if shifts => {
-                                lanes.iter_mut().zip(errors).for_each(|(x, e)| *x -= gain * e);
+                            Action::Shift { gain, offset } if shifts => {
+                                lanes
+                                    .iter_mut()
+                                    .zip(errors)
+                                    .for_each(|(x, e)| *x -= offset + gain * e);
                             }
                             Action::Scale if !shifts => {
                                 lanes.iter_mut().zip(errors).for_each(|(x, e)| *x *= 1.0 - e);
