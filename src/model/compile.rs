@@ -168,7 +168,11 @@ impl<'m> Compiler<'m> {
             drafts: Vec::new(),
             own: HashSet::from([register]),
         });
-        let residual = self.emit(parts.residual);
+        let mut residual = self.emit(parts.residual);
+        if residual == Value::Virtual(register) {
+            // The row of the unknown is taken out while it is stepped: nothing else may stand in it.
+            residual = self.draft(DraftKind::AddConstant(0.0), vec![register]);
+        }
         let slope = self.emit(parts.slope);
         let (residual, slope) = (self.in_register(residual), self.in_register(slope));
         let body = self.body.take().map(|body| body.drafts).unwrap_or_default();

@@ -75,6 +75,18 @@ const BLOCK_STEPS: u32 = 12;
 /// A relative step below this is the last one: the next would be below rounding.
 const SETTLED: f64 = 1e-9;
 
+/// Rows to read.
+struct Rows<'r> {
+    lanes: &'r [Box<Lanes>],
+    range: &'r Range<usize>,
+}
+
+impl Rows<'_> {
+    fn at(&self, register: Register) -> &[f64] {
+        &self.lanes[register as usize][self.range.clone()]
+    }
+}
+
 impl Registers {
     pub(super) fn new(count: usize) -> Self {
         Self {
@@ -162,36 +174,45 @@ impl Registers {
     /// solution is NaN.
     fn solve(&mut self, to: Register, solve: &Solve, tables: &[Table], range: &Range<usize>) {
         let unknown = to as usize;
-        for lane in range.clone() {
-            let lower = self.lanes[solve.lower as usize][lane];
-            let upper = self.lanes[solve.upper as usize][lane];
-            self.lanes[unknown][lane] = (lower + solve.start).min(upper).max(lower);
-        }
+        // The unknown's own row is taken out while others are read beside it: rows as slices, one
+        // operation over all lanes, are what becomes vector code.
+        self.with_row(unknown, range, |x, rows, _| {
+            let bounds = rows.at(solve.lower).iter().zip(rows.at(solve.upper));
+            for (x, (lower, upper)) in x.iter_mut().zip(bounds) {
+                *x = (lower + solve.start).min(*upper).max(*lower);
+            }
+        });
         for _ in 0..BLOCK_STEPS {
             self.run(&solve.body, tables, range, false);
-            let mut largest: f64 = 0.0;
-            for lane in range.clone() {
-                let step = self.lanes[solve.residual as usize][lane]
-                    / self.lanes[solve.slope as usize][lane];
-                let x = self.lanes[unknown][lane] - step;
-                self.lanes[unknown][lane] = x;
-                // A NaN never compares larger: such lanes do not hold up the block.
-                let relative = (step / x).abs();
-                largest = if relative > largest { relative } else { largest };
-            }
-            if largest <= SETTLED {
+            let mut moving = false;
+            self.with_row(unknown, range, |x, rows, _| {
+                let steps = rows.at(solve.residual).iter().zip(rows.at(solve.slope));
+                for (x, (residual, slope)) in x.iter_mut().zip(steps) {
+                    let step = residual / slope;
+                    *x -= step;
+                    // A NaN never compares larger: such lanes do not hold up the block.
+                    moving |= step.abs() > SETTLED * x.abs();
+                }
+            });
+            if !moving {
                 break;
             }
         }
         // Residual and slope are those before the last step, which is below rounding where it settled.
-        for lane in range.clone() {
-            let x = self.lanes[unknown][lane];
-            let slope = self.lanes[solve.slope as usize][lane];
-            let step = self.lanes[solve.residual as usize][lane] / slope;
-            let settled = step.abs() <= SETTLED * x.abs();
-            let bounds =
-                self.lanes[solve.lower as usize][lane]..=self.lanes[solve.upper as usize][lane];
-            self.unsettled[lane] = !(settled && slope * solve.rising > 0.0 && bounds.contains(&x));
+        let mut any = false;
+        self.with_row(unknown, range, |x, rows, unsettled| {
+            let steps = rows.at(solve.residual).iter().zip(rows.at(solve.slope));
+            let bounds = rows.at(solve.lower).iter().zip(rows.at(solve.upper));
+            let lanes = x.iter().zip(unsettled).zip(steps.zip(bounds));
+            for ((x, unsettled), ((residual, slope), (lower, upper))) in lanes {
+                let settled = (residual / slope).abs() <= SETTLED * x.abs();
+                let meant = slope * solve.rising > 0.0;
+                *unsettled = !(settled && meant && *lower <= *x && *x <= *upper);
+                any |= *unsettled;
+            }
+        });
+        if !any {
+            return;
         }
         for lane in range.clone() {
             if self.unsettled[lane] {
@@ -199,6 +220,20 @@ impl Registers {
                 self.lanes[unknown][lane] = root.unwrap_or(f64::NAN);
             }
         }
+    }
+
+    /// Works on one row while the others are read.
+    fn with_row(
+        &mut self,
+        place: usize,
+        range: &Range<usize>,
+        mut work: impl FnMut(&mut [f64], &Rows<'_>, &mut [bool]),
+    ) {
+        std::mem::swap(&mut self.spare, &mut self.lanes[place]);
+        let Self { lanes, spare, unsettled, .. } = self;
+        let rows = Rows { lanes, range };
+        work(&mut spare[range.clone()], &rows, &mut unsettled[range.clone()]);
+        std::mem::swap(&mut self.spare, &mut self.lanes[place]);
     }
 
     /// One lane by itself, over the whole range of the unknown.

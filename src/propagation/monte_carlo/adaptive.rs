@@ -162,16 +162,32 @@ fn statistics(values: &mut [f64], probability: f64) -> Option<OutputStatistics> 
 /// any number of threads, and little rounding.
 pub(super) fn moments(values: &[f64]) -> (f64, f64) {
     let count = values.len() as f64;
-    let sum = |term: &(dyn Fn(f64) -> f64 + Sync)| -> f64 {
-        let parts: Vec<f64> = values
-            .par_chunks(SUPER_BLOCK)
-            .map(|chunk| chunk.iter().map(|value| term(*value)).sum::<f64>())
-            .collect();
-        parts.iter().sum()
-    };
     // Shifted by the first value, so that values that are all the same have that mean exactly.
     let shift = values.first().copied().unwrap_or(f64::NAN);
-    let mean = shift + sum(&|value| value - shift) / count;
-    let square = sum(&|value| (value - mean) * (value - mean));
+    let mean = shift + sum(values, |value| value - shift) / count;
+    let square = sum(values, |value| (value - mean) * (value - mean));
     (mean, (square / (count - 1.0)).sqrt())
+}
+
+/// Partial sums of a super-block: no addition waits for the one before.
+const PARTIAL: usize = 8;
+
+fn sum(values: &[f64], term: impl Fn(f64) -> f64 + Sync) -> f64 {
+    let parts: Vec<f64> = values
+        .par_chunks(SUPER_BLOCK)
+        .map(|chunk| {
+            let mut partial = [0.0; PARTIAL];
+            let (groups, rest) = chunk.as_chunks::<PARTIAL>();
+            for group in groups {
+                for (sum, value) in partial.iter_mut().zip(group) {
+                    *sum += term(*value);
+                }
+            }
+            for (sum, value) in partial.iter_mut().zip(rest) {
+                *sum += term(*value);
+            }
+            partial.iter().sum::<f64>()
+        })
+        .collect();
+    parts.iter().sum()
 }
