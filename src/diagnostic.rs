@@ -285,12 +285,18 @@ pub fn nearest<'a>(name: &str, known: impl IntoIterator<Item = &'a str>) -> Opti
         .map(|(_, candidate)| candidate)
 }
 
+/// What a user wrote, cut to what a one-line message can hold.
+pub fn shown(text: &str) -> String {
+    const MOST: usize = 60;
+
+    text.chars().take(MOST).collect()
+}
+
 /// A list of names for a message: thirty at the most.
 pub fn listed<'a>(names: impl IntoIterator<Item = &'a str>) -> String {
     const MOST: usize = 30;
 
-    let names: Vec<String> =
-        names.into_iter().map(|name| name.chars().take(60).collect()).collect();
+    let names: Vec<String> = names.into_iter().map(shown).collect();
     let shown = names.iter().take(MOST).cloned().collect::<Vec<_>>().join(", ");
     match names.len().saturating_sub(MOST) {
         0 => shown,

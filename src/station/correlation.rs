@@ -1,7 +1,7 @@
 //! `[[correlation]]`: sources whose errors go together.
 
 use super::section::{Findings, Section, number, string};
-use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest, shown};
 
 /// A correlation as a file states it.
 #[derive(Clone, Debug, PartialEq)]
@@ -43,7 +43,7 @@ fn read_names(
     for item in &items {
         let name = string("sources", item, findings)?;
         if !sources.contains(&name) {
-            let shown: String = name.chars().take(60).collect();
+            let shown = shown(&name);
             let title = format!("there is no source `{shown}`");
             let diagnostic = Diagnostic::error(Code::UnknownSource, item.span(), title);
             findings.push(match nearest(&name, sources.iter().map(String::as_str)) {

@@ -4,7 +4,7 @@ use super::section::{Findings, Section, string};
 use super::structure::{
     Evidence, Kind, StationInput, StructureSection, gravity_of, read_input, read_value,
 };
-use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest, shown};
 use crate::model::expression::LowerError;
 use crate::model::structures::{COEFFICIENT_FACTOR, HEAD};
 use crate::model::{Blueprint, Fault, FaultProblem, Input, Model, Part, UnknownText};
@@ -274,7 +274,7 @@ fn is_name(name: &str) -> bool {
 }
 
 fn not_a_name(name: &str, span: Span, findings: &mut Findings<'_>) {
-    let shown: String = name.chars().take(60).collect();
+    let shown = shown(name);
     findings.push(
         Diagnostic::error(
             Code::EquationSyntax,

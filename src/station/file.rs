@@ -164,7 +164,7 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     root.finish(findings);
     let stated_names: Vec<String> =
         stated_sources.iter().filter_map(|section| section.peek("name")).collect();
-    let Some(StructureSection { kind, mut inputs, unused }) = structure else {
+    let Some(StructureSection { kind, inputs, unused }) = structure else {
         // What can be told of the sources without knowing the inputs is told all the same.
         for section in stated_sources {
             source::read(section, None, findings);
@@ -202,7 +202,6 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     }
     let warnings = warnings(&sources, &inputs, &unused);
     let correlations = stated.into_iter().map(|each| (each.names, each.coefficient)).collect();
-    inputs.shrink_to_fit();
     let head = reads_head.then(|| head.unwrap_or_default());
     Some(Station {
         name: name?,

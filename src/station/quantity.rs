@@ -4,7 +4,7 @@ use toml::Spanned;
 use toml::de::DeValue;
 
 use super::section::{Findings, article, number};
-use crate::diagnostic::{Code, Diagnostic, Span};
+use crate::diagnostic::{Code, Diagnostic, Span, shown};
 use crate::units::{Dimension, Quantity, QuantityError, QuantityProblem, Unit, UnitError};
 
 /// A quantity as a file states it.
@@ -115,7 +115,7 @@ pub(super) fn report(
 ) {
     let place = findings.inside(span, text, &error.range);
     let place = if place.is_empty() { span.clone() } else { place };
-    let shown: String = text.chars().take(60).collect();
+    let shown = shown(text);
     let diagnostic = match &error.problem {
         QuantityProblem::DecimalComma(mended) => decimal_comma(what, mended, place, span),
         QuantityProblem::OutOfRange => Diagnostic::error(

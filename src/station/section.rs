@@ -6,7 +6,7 @@ use std::ops::Range;
 use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
-use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest, shown};
 
 /// The text of a file and what has been found wrong with it.
 #[derive(Debug)]
@@ -165,7 +165,7 @@ impl<'a, 'i> Section<'a, 'i> {
             if self.known.contains(key) {
                 continue;
             }
-            let shown: String = key.chars().take(60).collect();
+            let shown = shown(key);
             let title = format!("unknown key `{shown}` in {}", self.name);
             let mut diagnostic = Diagnostic::error(Code::UnknownKey, name.span(), title);
             if let Some(known) = nearest(key, self.known.iter().map(String::as_str)) {

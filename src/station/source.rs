@@ -5,7 +5,7 @@ use super::size::{self, Amount, Size};
 use super::spread::{Spread, Width, shift};
 use super::spread_reader::Reader;
 use super::structure::{Evidence, StationInput, read_evidence};
-use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest, shown};
 use crate::propagation::Distribution;
 use crate::units::Dimension;
 
@@ -313,7 +313,7 @@ fn read_acts_on(
 
 fn unknown_input(key: &str, span: Span, inputs: &[StationInput], findings: &mut Findings<'_>) {
     let keys: Vec<&str> = inputs.iter().map(|input| input.key.as_str()).collect();
-    let shown: String = key.chars().take(60).collect();
+    let shown = shown(key);
     let title = format!("`{shown}` is no input of this structure");
     let diagnostic = Diagnostic::error(Code::UnknownInput, span.clone(), title);
     findings.push(match nearest(key, keys.iter().copied()) {
@@ -359,7 +359,7 @@ fn read_replaces(
     if automatic.contains(&name) {
         return Some(name);
     }
-    let shown: String = name.chars().take(60).collect();
+    let shown = shown(&name);
     let title = format!("`{shown}` is no automatic source of this structure");
     let diagnostic = Diagnostic::error(Code::UnknownSource, span, title);
     findings.push(if automatic.is_empty() {
@@ -408,7 +408,7 @@ pub(super) fn unknown_word(
     span: Span,
     findings: &mut Findings<'_>,
 ) {
-    let shown: String = word.chars().take(60).collect();
+    let shown = shown(word);
     let title = format!("`{key}` cannot be `{shown}`");
     let diagnostic = Diagnostic::error(Code::UnknownWord, span.clone(), title)
         .help(format!("one of: {}", words.join(", ")));

@@ -214,16 +214,14 @@ impl<'a, 'i> Reader<'_, '_, 'a, 'i, '_> {
                 }
             },
         };
-        let belongs = |key: &str, there: bool, fits: bool| {
-            there && !fits && stated.len() == 1 && !key.is_empty()
-        };
         let is_flat = matches!(shape, Some(Shape::Trapezoidal(_)));
         let is_limit = matches!(shape, Some(Shape::CurvilinearTrapezoid(_)));
         for (key, there, fits, owner) in [
             ("flat_half_width", flat, is_flat, "trapezoidal"),
             ("limit_half_width", limit, is_limit, "curvilinear-trapezoid"),
         ] {
-            if belongs(key, there, fits) {
+            // Where the size is stated twice, that is the fault to tell.
+            if there && !fits && stated.len() == 1 {
                 let span = self.section.key_span(key).unwrap_or(0..0);
                 self.disagree(span, &format!("`{key}` belongs to the shape `{owner}`"));
                 return None;

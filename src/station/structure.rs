@@ -6,7 +6,7 @@ use toml::de::DeValue;
 use super::equation::{self, Equation};
 use super::quantity;
 use super::section::{Findings, Section, article};
-use crate::diagnostic::{Code, Diagnostic, Span, nearest};
+use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::structures::{
     CATALOGUE, GRAVITY, InputSpec, KINETIC_ENERGY_COEFFICIENT, Structure, find,
 };
@@ -128,7 +128,7 @@ fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
 
 fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) {
     let kinds = CATALOGUE.iter().map(|structure| structure.kind).chain([equation::KIND]);
-    let shown: String = kind.chars().take(60).collect();
+    let shown = shown(kind);
     let title = format!("`{shown}` is no kind of structure that nappe knows");
     let mut diagnostic = Diagnostic::error(Code::UnknownWord, value.span(), title);
     diagnostic = if let Some(near) = nearest(kind, kinds.clone()) {

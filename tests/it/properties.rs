@@ -1,7 +1,7 @@
 //! Properties that hold for anything: of expressions, units, distributions.
 
 use nappe::model::{Blueprint, Input, Model};
-use nappe::propagation::{Distribution, Effect};
+use nappe::propagation::Distribution;
 use nappe::units::{Dimension, Quantity, Rational, Unit};
 use proptest::prelude::*;
 use statrs::distribution::{Beta, ContinuousCDF, Triangular, Uniform};
@@ -274,11 +274,4 @@ fn linear_and_monte_carlo_agree_for_linear_models_and_shares_add_up() {
         assert!((share.first_order - row.share_linear).abs() < 5.0 * share.first_order_error);
         assert!((share.total - row.share_linear).abs() < 5.0 * share.total_error);
     }
-}
-
-#[test]
-fn effects_are_plain_data() {
-    // An effect is copied freely by callers that build problems of their own.
-    fn copies<T: Copy>() {}
-    copies::<Effect>();
 }

@@ -47,9 +47,7 @@ fn results_are_stable_from_release_to_release() {
 }
 
 #[test]
-fn fewer_trials_are_the_first_of_more() {
-    // With a common stream, the values of the first super-block do not depend on how many follow: the
-    // results of 4096 and of 8192 trials share half their draws, and so lie close.
+fn the_same_question_has_the_same_bits_and_another_number_of_trials_others() {
     let of = |count| -> f64 {
         let text = json("tests/data/budgets/notch.toml", Amount::Fixed(count), 1);
         let value: serde_json::Value = serde_json::from_str(&text).unwrap();
