@@ -138,6 +138,8 @@ codes! {
     TrialsUndefined = "trials_undefined",
     /// The adaptive procedure was stopped before its figures had settled.
     NotSettled = "not_settled",
+    /// A source replaces an automatic one but acts on another input.
+    ReplacedElsewhere = "replaced_elsewhere",
     /// A known bias whose own uncertainty is not stated.
     BiasWithoutUncertainty = "bias_without_uncertainty",
     /// Moments that a distribution does not have.

@@ -200,7 +200,8 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     if !any_faulty {
         check_correlations(&stated, &names, findings);
     }
-    let warnings = warnings(&sources, &inputs, &unused);
+    let mut warnings = warnings(&sources, &inputs, &unused);
+    warnings.extend(misplaced_replacements(&kind, &sources, &inputs));
     let correlations = stated.into_iter().map(|each| (each.names, each.coefficient)).collect();
     let head = reads_head.then(|| head.unwrap_or_default());
     Some(Station {
@@ -426,6 +427,32 @@ fn bare_problem(stated: &[StatedCorrelation], names: &[String]) -> Problem {
             })
             .collect(),
     }
+}
+
+/// Sources that take the place of an automatic one but act on another input: what that one stood for is
+/// then in nobody's hands.
+fn misplaced_replacements(
+    kind: &Kind,
+    sources: &[ErrorSource],
+    inputs: &[StationInput],
+) -> Vec<Warning> {
+    let Kind::Catalogue(structure) = kind else { return Vec::new() };
+    let automatic = structure.automatic_sources(&structure.regimes[0]);
+    let mut warnings = Vec::new();
+    for source in sources {
+        let replaced = automatic.iter().find(|each| source.replaces.as_deref() == Some(each.name));
+        let Some(replaced) = replaced else { continue };
+        if !source.inputs.iter().any(|input| inputs[*input].key == replaced.acts_on) {
+            warnings.push(Warning::new(
+                Code::ReplacedElsewhere,
+                format!(
+                    "`{}` replaces `{}` but does not act on `{}`: no source is left for that",
+                    source.name, replaced.name, replaced.acts_on
+                ),
+            ));
+        }
+    }
+    warnings
 }
 
 fn warnings(

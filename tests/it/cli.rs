@@ -282,3 +282,20 @@ fn reading_changes_no_file() {
     nappe(&["check", NOTCH]);
     assert_eq!(std::fs::read(NOTCH).unwrap(), before);
 }
+
+#[test]
+fn a_replacement_that_acts_elsewhere_is_warned_of() {
+    let text = std::fs::read_to_string(NOTCH).unwrap();
+    let with = |acts_on: &str| {
+        let source = format!(
+            "\n[[error_source]]\nname = \"calibration\"\nacts_on = \"{acts_on}\"\n\
+             standard_uncertainty = \"1 %\"\nreplaces = \"published coefficient\"\n"
+        );
+        let (station, findings) =
+            nappe::station::read([&text, source.as_str()].concat().as_bytes());
+        assert!(findings.is_empty(), "{findings:?}");
+        station.unwrap().warnings.iter().any(|each| each.code.as_str() == "replaced_elsewhere")
+    };
+    assert!(with("head"));
+    assert!(!with("coefficient_factor"));
+}
