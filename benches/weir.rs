@@ -23,7 +23,7 @@ use divan::counter::{BytesCount, ItemsCount};
 use nappe::model::{BLOCK, Outcome, Program};
 use nappe::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
 use nappe::propagation::{Coverage, Problem};
-use nappe::station::Station;
+use nappe::station::{Moment, Station};
 use nappe::study::{At, Budget, Question, budget};
 
 const WEIR: &[u8] = include_bytes!("weir.toml");
@@ -110,7 +110,7 @@ fn read(file: &[u8]) -> Station {
 }
 
 fn problem(station: &Station, head: f64) -> Problem {
-    station.at(Some(head), None).expect("a bench is run at a head that has a flow").problem
+    station.at(Moment { head: Some(head), ..Moment::default() }).expect("a bench is run at a head that has a flow").problem
 }
 
 /// What a user's run comes to, from the bytes of the file to both intervals.
@@ -165,6 +165,7 @@ fn linear(station: &Station, head: f64) -> Budget {
         coverage: Coverage::Probability(0.95),
         trials: None,
         seed: SEED,
+        tailwater: None,
         month: None,
     };
     budget(station, &question, &|_| {}).expect("a bench is run at a head that has a flow")

@@ -148,6 +148,22 @@ codes! {
     FromMemory = "from_memory",
     /// No error source is stated for the head.
     NoHeadSource = "no_head_source",
+    /// A coefficient of which no uncertainty is published, and no source of the file acts on it.
+    NoCoefficientSource = "no_coefficient_source",
+    /// The tailwater is above the modular limit and the structure has no equation for drowned flow.
+    NotModular = "not_modular",
+    /// The tailwater is above the modular limit: the equation for drowned flow is used.
+    DrownedFlow = "drowned_flow",
+    /// The flow at the control is not critical.
+    NotCritical = "not_critical",
+    /// The head is above the largest that the structure can take.
+    AboveMaximum = "above_maximum",
+    /// The head is read too near to the structure, or too far from it.
+    GaugeMisplaced = "gauge_misplaced",
+    /// Trials fall on another branch of the equation than the values asked about.
+    TrialsAcrossBranch = "trials_across_branch",
+    /// Another branch of the equation begins within three standard uncertainties.
+    NearBranch = "near_branch",
 }
 
 /// A place in the file and what is to be said about it.

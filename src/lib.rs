@@ -15,6 +15,7 @@
 //!     coverage: Coverage::Probability(0.95),
 //!     trials: None,
 //!     seed: 1,
+//!     tailwater: None,
 //!     month: None,
 //! };
 //! let answer = budget(&station.unwrap(), &question, &|_| {}).unwrap();

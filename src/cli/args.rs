@@ -92,6 +92,9 @@ pub(super) struct BudgetArgs {
     /// Month, 1 to 12, for sources that are there in some months only.
     #[arg(long, value_parser = clap::value_parser!(u32).range(1..=12))]
     pub(super) month: Option<u32>,
+    /// Indicated head of the tailwater above the crest, in place of what [tailwater] says.
+    #[arg(long, value_name = "HEAD", value_parser = length, allow_hyphen_values = true)]
+    pub(super) tailwater: Option<f64>,
     /// Monte Carlo trials: a number, `auto` (as many as two digits need) or 0 (none).
     #[arg(long, default_value = "auto", value_parser = trials)]
     pub(super) trials: Trials,

@@ -23,6 +23,7 @@ pub(super) fn run(arguments: &BudgetArgs) -> Result<(), Failure> {
         coverage: arguments.coverage(),
         trials: arguments.trials.0,
         seed: arguments.seed,
+        tailwater: arguments.tailwater,
         month: arguments.month,
     };
     let mut pool = rayon::ThreadPoolBuilder::new();

@@ -23,7 +23,11 @@ pub(super) enum Failure {
 impl From<Refusal> for Failure {
     fn from(refusal: Refusal) -> Self {
         match refusal {
-            Refusal::NoHead | Refusal::HeadNotRead | Refusal::Equation(_) => {
+            Refusal::NoHead
+            | Refusal::HeadNotRead
+            | Refusal::NoTailwater
+            | Refusal::TailwaterNotRead
+            | Refusal::Equation(_) => {
                 Self::BadQuestion(refusal.to_string())
             }
             Refusal::Dry(_) | Refusal::NoSolution(_) | Refusal::NoHeadForFlow { .. } => {

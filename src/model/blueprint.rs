@@ -38,6 +38,8 @@ pub struct Blueprint {
     pub flowing: Option<String>,
     /// An expression that is positive where a published curve is left and its end held.
     pub beyond: Option<String>,
+    /// Expressions that are zero where another form of the equation would be chosen.
+    pub borders: Vec<String>,
 }
 
 /// A scalar unknown as text.

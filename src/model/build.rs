@@ -51,6 +51,7 @@ impl<'a> Builder<'a> {
             result_dimension: Dimension::NONE,
             flowing: None,
             beyond: None,
+            borders: Vec::new(),
             names: all_names(blueprint),
             faulty: Vec::new(),
         };
@@ -301,7 +302,7 @@ impl<'a> Builder<'a> {
         if !self.faults.is_empty() {
             return;
         }
-        let Blueprint { flowing, beyond, .. } = self.blueprint;
+        let Blueprint { flowing, beyond, borders, .. } = self.blueprint;
         let mut read = |text: &Option<String>| match self.model.expression(text.as_ref()?) {
             Ok((id, _)) => Some(id),
             Err(faults) => {
@@ -310,8 +311,10 @@ impl<'a> Builder<'a> {
             }
         };
         let (flowing, beyond) = (read(flowing), read(beyond));
+        let borders = borders.iter().filter_map(|text| read(&Some(text.clone()))).collect();
         self.model.flowing = flowing;
         self.model.beyond = beyond;
+        self.model.borders = borders;
     }
 }
 

@@ -3,9 +3,9 @@
 use std::collections::{HashMap, HashSet};
 
 use super::allocate::{Allocation, Draft, DraftKind};
-use super::expression::{Graph, Id, Node, Number, SymbolId};
-use super::program::Program;
-use super::system::Model;
+use super::expression::{Graph, Id, Node, Number, Relation, SymbolId};
+use super::program::{Program, Watched};
+use super::system::{Branch, Model};
 use crate::units::Rational;
 
 /// The value of a node while a program is being made.
@@ -32,7 +32,9 @@ pub(super) struct Compiler<'m> {
 }
 
 struct Body {
+    /// Nodes that contain the unknown, and nodes that do not; those made on the way are added.
     depends: HashSet<Id>,
+    independent: HashSet<Id>,
     known: HashMap<Id, Value>,
     roots: HashMap<u32, Value>,
     drafts: Vec<(u32, Draft)>,
@@ -55,12 +57,21 @@ impl<'m> Compiler<'m> {
         }
     }
 
-    /// Compiles the outputs, and the model's test of whether water flows.
-    pub(super) fn compile(mut self, outputs: &[Id]) -> Program {
+    /// Compiles the outputs, the model's test of whether water flows, and the conditions whose sides are
+    /// to be watched.
+    pub(super) fn compile(mut self, outputs: &[Id], branches: &[Branch]) -> Program {
         let values: Vec<Value> = outputs.iter().map(|id| self.emit(*id)).collect();
+        let mut watched = Vec::new();
+        for Branch { relation, left, right } in branches {
+            let sides = [*left, *right].map(|id| self.emit(id));
+            // Where both sides are constant, no trial is on another branch.
+            if sides.iter().any(|side| matches!(side, Value::Virtual(_))) {
+                watched.push((*relation, sides));
+            }
+        }
         let flowing = self.model.flowing().map(|id| self.emit(id));
         let beyond = self.model.beyond().map(|id| self.emit(id));
-        self.finish(&values, [flowing, beyond])
+        self.finish(&values, [flowing, beyond], &watched)
     }
 
     fn graph(&self) -> &Graph {
@@ -73,7 +84,7 @@ impl<'m> Compiler<'m> {
     }
 
     fn emit(&mut self, id: Id) -> Value {
-        let in_body = self.body.as_ref().is_some_and(|body| body.depends.contains(&id));
+        let in_body = self.depends(id);
         let known = match &self.body {
             Some(body) if in_body => body.known.get(&id),
             _ => self.known.get(&id),
@@ -92,6 +103,23 @@ impl<'m> Compiler<'m> {
             _ => self.known.insert(id, value),
         };
         value
+    }
+
+    /// Whether a node contains the unknown that is being solved for.
+    fn depends(&mut self, id: Id) -> bool {
+        let Some(body) = &self.body else { return false };
+        if body.depends.contains(&id) {
+            return true;
+        }
+        if body.independent.contains(&id) {
+            return false;
+        }
+        let operands = self.graph().operands(id);
+        let found = operands.into_iter().any(|operand| self.depends(operand));
+        if let Some(body) = &mut self.body {
+            if found { body.depends.insert(id) } else { body.independent.insert(id) };
+        }
+        found
     }
 
     fn emit_new(&mut self, id: Id) -> Value {
@@ -160,9 +188,9 @@ impl<'m> Compiler<'m> {
         let upper = self.emit(parts.upper);
         let (lower, upper) = (self.in_register(lower), self.in_register(upper));
         let register = self.fresh();
-        let depends = self.model.dependents([parts.residual, parts.slope], parts.symbol);
         self.body = Some(Body {
-            depends,
+            depends: HashSet::from([parts.symbol]),
+            independent: HashSet::new(),
             known: HashMap::from([(parts.symbol, Value::Virtual(register))]),
             roots: HashMap::new(),
             drafts: Vec::new(),
@@ -393,7 +421,16 @@ impl<'m> Compiler<'m> {
         value
     }
 
-    fn finish(mut self, outputs: &[Value], conditions: [Option<Value>; 2]) -> Program {
+    fn finish(
+        mut self,
+        outputs: &[Value],
+        conditions: [Option<Value>; 2],
+        watched: &[(Relation, [Value; 2])],
+    ) -> Program {
+        let watched: Vec<(Relation, [u32; 2])> = watched
+            .iter()
+            .map(|(relation, sides)| (*relation, sides.map(|side| self.in_register(side))))
+            .collect();
         let outputs: Vec<u32> = outputs.iter().map(|value| self.in_register(*value)).collect();
         let [flowing, beyond] = conditions.map(|value| value.map(|value| self.in_register(value)));
         let kept: Vec<u32> = self
@@ -404,6 +441,7 @@ impl<'m> Compiler<'m> {
             .chain(outputs.iter().copied())
             .chain(flowing)
             .chain(beyond)
+            .chain(watched.iter().flat_map(|(_, sides)| *sides))
             .collect();
         let mut allocation = Allocation::new(&kept);
         let steps = allocation.allocate(&self.drafts);
@@ -416,6 +454,14 @@ impl<'m> Compiler<'m> {
             outputs: outputs.iter().map(place).collect(),
             flowing: flowing.as_ref().map(place),
             beyond: beyond.as_ref().map(place),
+            watched: watched
+                .iter()
+                .map(|(relation, sides)| Watched {
+                    relation: *relation,
+                    sides: sides.map(|side| place(&side)),
+                    nominal: false,
+                })
+                .collect(),
             registers: allocation.count as usize,
         }
     }

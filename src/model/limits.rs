@@ -2,48 +2,48 @@
 
 use super::{Citation, Confidence};
 
-/// One end of what a standard allows, in SI units.
-#[derive(Clone, Copy, Debug, PartialEq)]
-pub enum Bound {
-    /// Not below this.
-    AtLeast(f64),
-    /// Not above this.
-    AtMost(f64),
+/// Which end of what is allowed a bound is.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Side {
+    /// Not below the bound.
+    AtLeast,
+    /// Not above it.
+    AtMost,
 }
 
-impl Bound {
-    /// The number.
-    pub fn value(self) -> f64 {
-        match self {
-            Self::AtLeast(value) | Self::AtMost(value) => value,
-        }
-    }
-
+impl Side {
     /// The sign between quantity and bound.
     pub fn sign(self) -> &'static str {
         match self {
-            Self::AtLeast(_) => ">=",
-            Self::AtMost(_) => "<=",
+            Self::AtLeast => ">=",
+            Self::AtMost => "<=",
         }
     }
 
-    /// Whether a value keeps the bound; a value at it, to rounding, does.
-    pub fn allows(self, value: f64) -> bool {
-        let slack = 1e-12 * self.value().abs();
+    /// How far a value is on the right side of a bound; negative on the wrong one.
+    pub fn margin(self, value: f64, bound: f64) -> f64 {
         match self {
-            Self::AtLeast(bound) => value >= bound - slack,
-            Self::AtMost(bound) => value <= bound + slack,
+            Self::AtLeast => value - bound,
+            Self::AtMost => bound - value,
         }
+    }
+
+    /// Whether a value keeps the bound; a value at it, to rounding, does. One that is no number keeps
+    /// none.
+    pub fn allows(self, value: f64, bound: f64) -> bool {
+        self.margin(value, bound) >= -1e-12 * bound.abs()
     }
 }
 
-/// A limit of use as a structure states it.
+/// A limit of use as a structure states it, in its symbols and SI units.
 #[derive(Clone, Copy, Debug, PartialEq)]
 pub struct Limit {
-    /// The quantity, in the symbols of the structure.
+    /// The quantity.
     pub quantity: &'static str,
-    /// The bound.
-    pub bound: Bound,
+    /// Which end the bound is.
+    pub side: Side,
+    /// The bound: a number, or an expression.
+    pub bound: &'static str,
     /// What the quantity is, in words.
     pub meaning: &'static str,
     /// Who set it.
@@ -54,13 +54,21 @@ pub struct Limit {
 
 impl Limit {
     /// A lower limit.
-    pub const fn at_least(quantity: &'static str, bound: f64, meaning: &'static str) -> Unsourced {
-        Unsourced { quantity, bound: Bound::AtLeast(bound), meaning }
+    pub const fn at_least(
+        quantity: &'static str,
+        bound: &'static str,
+        meaning: &'static str,
+    ) -> Unsourced {
+        Unsourced { quantity, side: Side::AtLeast, bound, meaning }
     }
 
     /// An upper limit.
-    pub const fn at_most(quantity: &'static str, bound: f64, meaning: &'static str) -> Unsourced {
-        Unsourced { quantity, bound: Bound::AtMost(bound), meaning }
+    pub const fn at_most(
+        quantity: &'static str,
+        bound: &'static str,
+        meaning: &'static str,
+    ) -> Unsourced {
+        Unsourced { quantity, side: Side::AtMost, bound, meaning }
     }
 }
 
@@ -68,14 +76,15 @@ impl Limit {
 #[derive(Clone, Copy, Debug)]
 pub struct Unsourced {
     quantity: &'static str,
-    bound: Bound,
+    side: Side,
+    bound: &'static str,
     meaning: &'static str,
 }
 
 impl Unsourced {
     /// Who set the limit, and how well that is known here.
     pub const fn by(self, source: Citation, confidence: Confidence) -> Limit {
-        let Self { quantity, bound, meaning } = self;
-        Limit { quantity, bound, meaning, source, confidence }
+        let Self { quantity, side, bound, meaning } = self;
+        Limit { quantity, side, bound, meaning, source, confidence }
     }
 }

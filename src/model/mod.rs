@@ -18,8 +18,8 @@ mod system;
 mod tape;
 
 pub use blueprint::{Blueprint, Fault, FaultProblem, Input, Part, UnknownText};
-pub use limits::{Bound, Limit};
+pub use limits::{Limit, Side, Unsourced};
 pub use program::{Outcome, Program, Workspace};
 pub use source::{Citation, Confidence};
-pub use system::{Definition, Model, Unknown};
+pub use system::{Branch, Definition, Model, Unknown};
 pub use tape::BLOCK;

@@ -1,7 +1,7 @@
 //! Expressions of a model, compiled, and run on blocks of trials.
 
 use super::compile::Compiler;
-use super::expression::{Id, Table};
+use super::expression::{Id, Relation, Table};
 use super::system::Model;
 use super::tape::{BLOCK, Operation, Register, Registers, Step};
 
@@ -23,6 +23,16 @@ pub struct Program {
     pub(super) flowing: Option<Register>,
     /// Positive where a published curve is left.
     pub(super) beyond: Option<Register>,
+    /// Conditions of which it is watched how they come out.
+    pub(super) watched: Vec<Watched>,
+}
+
+/// A condition of the equation, and how it comes out at the nominal inputs.
+#[derive(Clone, Debug)]
+pub(super) struct Watched {
+    pub(super) relation: Relation,
+    pub(super) sides: [Register; 2],
+    pub(super) nominal: bool,
 }
 
 /// What a running program needs: its registers. One for each thread, reused from block to block.
@@ -53,9 +63,48 @@ impl Program {
         fixed: &[Option<f64>],
         nominal: &[f64],
     ) -> Self {
-        let mut program = Compiler::new(model, fixed).compile(outputs);
+        let mut program = Compiler::new(model, fixed).compile(outputs, &[]);
         program.start_near(nominal);
         program
+    }
+
+    /// The same, and it is watched on which branches of the equation each lane falls
+    /// ([`Program::across_branch`]).
+    pub fn watching_branches(
+        model: &mut Model,
+        outputs: &[Id],
+        fixed: &[Option<f64>],
+        nominal: &[f64],
+    ) -> Self {
+        let branches = model.branches();
+        let mut program = Compiler::new(model, fixed).compile(outputs, &branches);
+        program.start_near(nominal);
+        let mut workspace = program.workspace();
+        program.fill(&mut workspace, nominal);
+        program.run(&mut workspace, 1, &mut [Outcome::Value; BLOCK]);
+        for watched in &mut program.watched {
+            watched.nominal = watched.holds(&workspace.registers, 0);
+        }
+        program
+    }
+
+    /// How many of the first `lanes` lanes, after a run, fall on another branch of the equation than the
+    /// nominal inputs. Lanes without a value or without flow do not count.
+    pub fn across_branch(
+        &self,
+        workspace: &Workspace,
+        outcomes: &[Outcome],
+    ) -> u64 {
+        if self.watched.is_empty() {
+            return 0;
+        }
+        let registers = &workspace.registers;
+        let across = |lane: usize| {
+            self.watched.iter().any(|each| each.holds(registers, lane) != each.nominal)
+        };
+        let counts = |outcome: &Outcome| matches!(outcome, Outcome::Value | Outcome::OutsideTable);
+        outcomes.iter().enumerate().filter(|(lane, outcome)| counts(outcome) && across(*lane)).count()
+            as u64
     }
 
     /// A fresh workspace.
@@ -133,15 +182,20 @@ impl Program {
     /// Values of all outputs for one set of inputs, which are all given in full.
     pub fn evaluate(&self, inputs: &[f64]) -> (Vec<f64>, Outcome) {
         let mut workspace = self.workspace();
-        for (input, value) in inputs.iter().enumerate() {
-            if let Some(lanes) = self.input(&mut workspace, input) {
-                lanes[0] = *value;
-            }
-        }
+        self.fill(&mut workspace, inputs);
         let mut outcomes = [Outcome::Value; BLOCK];
         self.run(&mut workspace, 1, &mut outcomes);
         let values = (0..self.outputs.len()).map(|k| self.output(&workspace, k)[0]).collect();
         (values, outcomes[0])
+    }
+
+    /// Puts the inputs into the first lane.
+    fn fill(&self, workspace: &mut Workspace, inputs: &[f64]) {
+        for (input, value) in inputs.iter().enumerate() {
+            if let Some(lanes) = self.input(workspace, input) {
+                lanes[0] = *value;
+            }
+        }
     }
 
     /// Registers in use, as a measure of how much of the cache a block takes.
@@ -152,11 +206,7 @@ impl Program {
     /// Sets where each solve starts from the solution at the nominal inputs.
     fn start_near(&mut self, nominal: &[f64]) {
         let mut workspace = self.workspace();
-        for (input, value) in nominal.iter().enumerate() {
-            if let Some(lanes) = self.input(&mut workspace, input) {
-                lanes[0] = *value;
-            }
-        }
+        self.fill(&mut workspace, nominal);
         for index in 0..self.steps.len() {
             let registers = &mut workspace.registers;
             registers.run(&self.steps[index..=index], &self.tables, &(0..1), false);
@@ -170,5 +220,12 @@ impl Program {
                 solve.rising = registers.lanes[solve.slope as usize][0].signum();
             }
         }
+    }
+}
+
+impl Watched {
+    fn holds(&self, registers: &Registers, lane: usize) -> bool {
+        let [left, right] = self.sides.map(|side| registers.lanes[side as usize][lane]);
+        self.relation.holds(left, right)
     }
 }

@@ -1,11 +1,11 @@
 //! A model: named definitions over inputs, some of them given only by an equation they must satisfy.
 
-use std::collections::{BTreeMap, HashMap, HashSet};
+use std::collections::{BTreeMap, HashMap};
 
 use super::blueprint::{Blueprint, Fault, Input, Part, mismatch_fault, syntax_fault};
 use super::build::Builder;
 use super::expression::{
-    Dimensions, Graph, Id, MismatchError, Names, Node, Number, Scope, SymbolId, Table, TableId,
+    Dimensions, Graph, Id, MismatchError, Names, Node, Number, Relation, Scope, SymbolId, Table, TableId,
     Tree, parse,
 };
 use super::program::{Outcome, Program};
@@ -41,6 +41,17 @@ pub struct Unknown {
     pub upper: Id,
 }
 
+/// A condition on which the equation takes one branch or another.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Branch {
+    /// The comparison.
+    pub relation: Relation,
+    /// Its left side.
+    pub left: Id,
+    /// Its right side.
+    pub right: Id,
+}
+
 /// What the compiler needs of an unknown.
 #[derive(Clone, Copy, Debug)]
 pub(super) struct UnknownParts {
@@ -65,6 +76,7 @@ pub struct Model {
     pub(super) result_dimension: Dimension,
     pub(super) flowing: Option<Id>,
     pub(super) beyond: Option<Id>,
+    pub(super) borders: Vec<Id>,
     /// Every name of the blueprint, to find the nearest to a mistyped one.
     pub(super) names: Vec<String>,
     /// Definitions that have a fault: their dimension is not known.
@@ -206,12 +218,41 @@ impl Model {
         self.graph.text(self.graph.unnamed(id), self)
     }
 
-    /// Table look-ups among the operands of the result: table, arguments.
-    pub fn look_ups(&self) -> Vec<(TableId, [Id; 2])> {
+    /// Everything that the result is made of, through the unknowns.
+    fn parts_of_result(&self) -> Vec<Id> {
         let residuals = self.unknowns.iter().map(|unknown| unknown.residual);
         let roots: Vec<Id> = residuals.chain([self.result]).collect();
-        self.graph
-            .reachable(roots)
+        self.graph.reachable(roots)
+    }
+
+    /// The conditions that the result branches on: those inside its equation, and the borders at which
+    /// another form of it would be chosen.
+    pub fn branches(&mut self) -> Vec<Branch> {
+        let zero = self.graph.whole(0);
+        let borders = self.borders.iter().map(|border| Branch {
+            relation: Relation::AtMost,
+            left: *border,
+            right: zero,
+        });
+        let mut branches: Vec<Branch> = borders.collect();
+        for id in self.parts_of_result() {
+            let Node::Choose { relation, left, right, .. } = *self.graph.node(id) else { continue };
+            let branch = Branch { relation, left, right };
+            if !branches.contains(&branch) {
+                branches.push(branch);
+            }
+        }
+        branches
+    }
+
+    /// The distance of a branch's two sides, left minus right.
+    pub fn distance(&mut self, branch: Branch) -> Id {
+        self.graph.difference(branch.left, branch.right)
+    }
+
+    /// Table look-ups among the operands of the result: table, arguments.
+    pub fn look_ups(&self) -> Vec<(TableId, [Id; 2])> {
+        self.parts_of_result()
             .into_iter()
             .filter_map(|id| match self.graph.node(id) {
                 Node::LookUp { table, at, order: [0, 0] } => Some((*table, *at)),
@@ -263,21 +304,6 @@ impl Model {
     pub(super) fn unknown_parts(&mut self, unknown: usize) -> UnknownParts {
         let Unknown { symbol, residual, slope, lower, upper, .. } = self.unknowns[unknown];
         UnknownParts { symbol: self.graph.symbol(symbol), residual, slope, lower, upper }
-    }
-
-    /// Of the nodes that `roots` are made of, those that contain `symbol`.
-    pub(super) fn dependents(
-        &self,
-        roots: impl IntoIterator<Item = Id>,
-        symbol: Id,
-    ) -> HashSet<Id> {
-        let mut result = HashSet::from([symbol]);
-        for id in self.graph.reachable(roots) {
-            if self.graph.operands(id).iter().any(|operand| result.contains(operand)) {
-                result.insert(id);
-            }
-        }
-        result
     }
 
     pub(super) fn graph_dimension(&self, tree: &Tree) -> Result<Option<Dimension>, MismatchError> {

@@ -18,5 +18,5 @@ pub use correlation::{Correlation, ImpossibleCorrelation, impossible};
 pub use coverage::Coverage;
 pub use distribution::Distribution;
 pub use linear::{Contribution, DegreesOfFreedom, Linear, linear};
-pub use problem::{Action, Effect, Problem, Source};
+pub use problem::{Action, Effect, Problem, Source, corrected};
 pub use shares::{Share, Shares, shares};

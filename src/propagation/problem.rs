@@ -60,26 +60,12 @@ impl Problem {
     /// The inputs with the known biases taken out:
     /// (indicated - sum of mean shifts) times the product of (1 - mean scale errors).
     pub fn corrected(&self) -> Vec<f64> {
-        let means: Vec<f64> =
-            self.sources.iter().map(|source| source.distribution.mean()).collect();
-        self.true_values(|source| means[source])
+        corrected(&self.indicated, &self.sources)
     }
 
     /// The inputs' values for given errors of the sources.
     pub fn true_values(&self, error: impl Fn(usize) -> f64) -> Vec<f64> {
-        let mut values = self.indicated.clone();
-        let mut factors = vec![1.0; values.len()];
-        for (index, source) in self.sources.iter().enumerate() {
-            for effect in &source.effects {
-                match effect.action {
-                    Action::Shift { gain, offset } => {
-                        values[effect.input] -= offset + gain * error(index);
-                    }
-                    Action::Scale => factors[effect.input] *= 1.0 - error(index),
-                }
-            }
-        }
-        values.iter().zip(factors).map(|(value, factor)| value * factor).collect()
+        true_values(&self.indicated, &self.sources, error)
     }
 
     /// Whether any source acts on an input.
@@ -124,4 +110,26 @@ impl Problem {
             .find(|each| each.sources == [a, b] || each.sources == [b, a])
             .map_or(0.0, |each| each.coefficient)
     }
+}
+
+/// Indicated values with the known biases of their sources taken out.
+pub fn corrected(indicated: &[f64], sources: &[Source]) -> Vec<f64> {
+    let means: Vec<f64> = sources.iter().map(|source| source.distribution.mean()).collect();
+    true_values(indicated, sources, |source| means[source])
+}
+
+fn true_values(indicated: &[f64], sources: &[Source], error: impl Fn(usize) -> f64) -> Vec<f64> {
+    let mut values = indicated.to_vec();
+    let mut factors = vec![1.0; values.len()];
+    for (index, source) in sources.iter().enumerate() {
+        for effect in &source.effects {
+            match effect.action {
+                Action::Shift { gain, offset } => {
+                    values[effect.input] -= offset + gain * error(index);
+                }
+                Action::Scale => factors[effect.input] *= 1.0 - error(index),
+            }
+        }
+    }
+    values.iter().zip(factors).map(|(value, factor)| value * factor).collect()
 }

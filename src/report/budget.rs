@@ -1,12 +1,13 @@
 //! A budget as a page.
 
 use super::document::Document;
+use super::heads::heads_in_words;
 use super::rounding::rounded;
 use super::{CAUTION, FROM_MEMORY, UnitSystem};
 use crate::propagation::{Coverage, DegreesOfFreedom};
 use crate::station::Evidence;
-use crate::study::{Budget, BudgetRow, Correction, InputRow};
-use crate::units::{Unit, significant};
+use crate::study::{Budget, BudgetRow, Correction, FlowState, Hydraulics, InputRow};
+use crate::units::{Unit, significant, with_unit};
 
 /// Lays out a budget.
 pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
@@ -40,6 +41,7 @@ pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
     );
     input_table(&mut page, budget);
     page.lines(budget.equations.iter().map(|(name, text)| format!("{name} = {text}")));
+    hydraulics(&mut page, budget);
     limit_table(&mut page, budget);
     if budget.rows.iter().any(|row| row.published.is_some()) || !budget.limits.is_empty() {
         page.paragraph(FROM_MEMORY);
@@ -339,11 +341,6 @@ fn retrace_table(page: &mut Document, budget: &Budget) {
     page.table(&columns, rows);
 }
 
-/// A number with its SI unit; a pure number has none.
-fn with_unit(number: String, unit: &str) -> String {
-    if unit == "1" { number } else { format!("{number} {unit}") }
-}
-
 /// What stands behind a row: a publication, or the station's evidence.
 fn basis(row: &BudgetRow) -> String {
     match &row.published {
@@ -397,18 +394,57 @@ fn limit_table(page: &mut Document, budget: &Budget) {
     let rows = budget
         .limits
         .iter()
-        .map(|limit| {
+        .map(|state| {
+            let limit = &state.limit;
+            let number = |value: f64| with_unit(significant(value, 4), &state.unit);
             vec![
                 limit.quantity.clone(),
                 limit.meaning.clone(),
-                with_unit(significant(limit.value, 4), &limit.unit),
-                format!("{} {}", limit.sign, with_unit(significant(limit.bound, 4), &limit.unit)),
-                if limit.kept { "kept".to_owned() } else { "NOT KEPT".to_owned() },
-                format!("{}, {}", limit.standard, limit.confidence),
+                number(state.value),
+                format!("{} {}", limit.side.sign(), number(state.bound)),
+                number(state.margin),
+                if state.kept { "kept".to_owned() } else { "NOT KEPT".to_owned() },
+                state.fails_at.as_ref().map_or_else(|| "-".to_owned(), |heads| heads_in_words(heads)),
+                format!("{}, {}", limit.source.document, limit.confidence.words()),
             ]
         })
         .collect();
-    page.table(&["limit of use", "what it is", "#here", "#limit", "", "source"], rows);
+    page.table(
+        &["limit", "what it is", "#here", "#limit", "#margin", "", "heads at which it fails", "source"],
+        rows,
+    );
+}
+
+/// What is known of the flow at the control: modular, critical.
+fn hydraulics(page: &mut Document, budget: &Budget) {
+    let Some(Hydraulics { state, tailwater_head, highest_modular, factor, limit }) =
+        &budget.hydraulics
+    else {
+        return;
+    };
+    let metres = |value: f64| format!("{} m", significant(value, 4));
+    let up_to = highest_modular.map_or_else(
+        || "as each section's limit says".to_owned(),
+        |highest| format!("up to a tailwater head of {} above the crest", metres(highest)),
+    );
+    let tailwater = tailwater_head.map_or_else(String::new, metres);
+    let text = match state {
+        FlowState::NotChecked => format!(
+            "Modular flow is taken for granted: the file states no [tailwater]. It is modular {up_to}."
+        ),
+        FlowState::Modular => format!("The flow is modular {up_to}; the tailwater head is {tailwater}."),
+        FlowState::Drowned => format!(
+            "The flow is DROWNED: it is modular {up_to}, and the tailwater head is {tailwater}. \
+             Drowned-flow factor {}.",
+            factor.map_or_else(|| "of each section".to_owned(), |factor| significant(factor, 4))
+        ),
+        FlowState::NotModular => format!(
+            "The flow is NOT MODULAR: it would be {up_to}, and the tailwater head is {tailwater}. The \
+             discharge above is too high."
+        ),
+    };
+    page.paragraph(text);
+    page.paragraph(format!("Modular limit: {limit}."));
 }
 
 fn how_computed(budget: &Budget) -> String {

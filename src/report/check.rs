@@ -2,8 +2,9 @@
 
 use super::UnitSystem;
 use super::document::Document;
-use crate::study::{Check, CheckedEnd};
-use crate::units::{Unit, significant};
+use super::heads::heads_in_words;
+use crate::study::{Check, CheckedEnd, FailingLimit, LimitState};
+use crate::units::{Unit, significant, with_unit};
 
 /// Lays out a check.
 pub fn check_document(check: &Check, units: UnitSystem) -> Document {
@@ -21,8 +22,44 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
     } else {
         page.table(&["#indicated head", "#result", "limits of use that are not kept"], rows);
     }
+    match &check.failing {
+        Some(failing) if failing.is_empty() => {
+            page.paragraph("Every limit is kept at every head of the range.");
+        }
+        Some(failing) => {
+            let rows = failing.iter().map(failing_row).collect();
+            page.table(&["limit", "what it is", "heads at which it is not kept", "source"], rows);
+        }
+        None => {}
+    }
+    for misfit in &check.misfits {
+        page.paragraph(format!("NOT KEPT: {}", limit_in_words(misfit)));
+    }
     page.warnings(&check.warnings);
     page
+}
+
+fn failing_row(failing: &FailingLimit) -> Vec<String> {
+    let limit = &failing.limit;
+    vec![
+        format!("{} {} {}", limit.quantity, limit.side.sign(), limit.bound),
+        limit.meaning.clone(),
+        heads_in_words(&failing.heads),
+        format!("{}, {}", limit.source.document, limit.confidence.words()),
+    ]
+}
+
+fn limit_in_words(state: &LimitState) -> String {
+    let number = |value: f64| with_unit(significant(value, 3), &state.unit);
+    let limit = &state.limit;
+    format!(
+        "{} = {}, limit {} {} ({})",
+        limit.quantity,
+        number(state.value),
+        limit.side.sign(),
+        number(state.bound),
+        limit.source.document
+    )
 }
 
 fn row(end: &CheckedEnd, check: &Check, units: UnitSystem) -> Vec<String> {
@@ -42,21 +79,7 @@ fn row(end: &CheckedEnd, check: &Check, units: UnitSystem) -> Vec<String> {
         }
         Err(refusal) => refusal.to_string(),
     };
-    let broken: Vec<String> = end
-        .broken
-        .iter()
-        .map(|limit| {
-            let unit = if limit.unit == "1" { String::new() } else { format!(" {}", limit.unit) };
-            format!(
-                "{} = {}{unit}, limit {} {}{unit} ({})",
-                limit.quantity,
-                significant(limit.value, 3),
-                limit.sign,
-                significant(limit.bound, 3),
-                limit.standard
-            )
-        })
-        .collect();
+    let broken: Vec<String> = end.broken.iter().map(limit_in_words).collect();
     let broken = if broken.is_empty() { "none".to_owned() } else { broken.join("; ") };
     vec![head, result, broken]
 }

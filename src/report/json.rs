@@ -3,8 +3,9 @@
 use schemars::JsonSchema;
 use serde::Serialize;
 
+use crate::model::structures::LimitKind;
 use crate::propagation::DegreesOfFreedom;
-use crate::study::{Budget, BudgetRow, LimitState, Sheet};
+use crate::study::{Budget, BudgetRow, FlowState, Hydraulics, LimitState, Sheet};
 
 /// A budget, as `--format json` prints it.
 #[derive(Debug, Serialize, JsonSchema)]
@@ -37,8 +38,10 @@ pub struct BudgetJson {
     inputs: Vec<InputJson>,
     /// The equations.
     equations: Vec<EquationJson>,
-    /// Limits of use.
-    limits: Vec<LimitState>,
+    /// Limits of use, of modular and critical flow, and of the station itself.
+    limits: Vec<LimitJson>,
+    /// Whether the flow is modular; null for an equation of the station's own.
+    hydraulics: Option<HydraulicsJson>,
     /// Caveats.
     warnings: Vec<WarningJson>,
 }
@@ -55,6 +58,9 @@ struct AtJson {
     /// The month asked about.
     #[serde(skip_serializing_if = "Option::is_none")]
     month: Option<u32>,
+    /// Indicated head of the tailwater, m; left out where the file states none.
+    #[serde(skip_serializing_if = "Option::is_none")]
+    tailwater_head_m: Option<f64>,
 }
 
 /// The quantity asked for.
@@ -114,6 +120,8 @@ struct MonteCarloJson {
     trials_outside_table: u64,
     /// Trials in which the equation has no value, left out.
     trials_undefined: u64,
+    /// Trials in which another branch of the equation holds than at the corrected inputs.
+    trials_across_branch: u64,
     /// Base trials of the shares.
     share_base_trials: u64,
 }
@@ -230,6 +238,90 @@ struct WarningJson {
     text: String,
 }
 
+/// A limit against what is there.
+#[derive(Debug, Serialize, JsonSchema)]
+struct LimitJson {
+    /// `use`, `modular`, `critical` or `station`.
+    kind: String,
+    /// The quantity, in the symbols of the structure.
+    quantity: String,
+    /// What it is, in words.
+    meaning: String,
+    /// What is there, in SI units.
+    value: f64,
+    /// `>=` or `<=`.
+    sign: String,
+    /// The bound, in SI units.
+    bound: f64,
+    /// How far the value is on the right side; negative on the wrong one.
+    margin: f64,
+    /// The SI unit of all three.
+    unit: String,
+    /// It is kept.
+    kept: bool,
+    /// Indicated heads of the range at which it is not kept, from and to; null where that is not asked.
+    fails_at_heads_m: Option<Vec<[f64; 2]>>,
+    /// Who set it.
+    standard: String,
+    /// How well it is known, in words.
+    confidence: String,
+    /// It is quoted from memory.
+    from_memory: bool,
+}
+
+/// Whether the flow is modular.
+#[derive(Debug, Serialize, JsonSchema)]
+struct HydraulicsJson {
+    /// `modular`, `drowned` (by an equation for it), `not_modular` (without one) or `not_checked`.
+    state: String,
+    /// Corrected head of the tailwater above the crest; null where the file states none.
+    tailwater_head_m: Option<f64>,
+    /// The highest tailwater at which the flow is modular; null where sections differ or none is known.
+    highest_modular_tailwater_head_m: Option<f64>,
+    /// The drowned-flow factor in force; null where there is none.
+    drowned_flow_factor: Option<f64>,
+}
+
+fn limit_value(state: &LimitState) -> LimitJson {
+    let limit = &state.limit;
+    let kind = match limit.kind {
+        LimitKind::Use => "use",
+        LimitKind::Modular => "modular",
+        LimitKind::Critical => "critical",
+        LimitKind::Station => "station",
+    };
+    LimitJson {
+        kind: kind.to_owned(),
+        quantity: limit.quantity.clone(),
+        meaning: limit.meaning.clone(),
+        value: state.value,
+        sign: limit.side.sign().to_owned(),
+        bound: state.bound,
+        margin: state.margin,
+        unit: state.unit.clone(),
+        kept: state.kept,
+        fails_at_heads_m: state.fails_at.clone(),
+        standard: limit.source.document.to_owned(),
+        confidence: limit.confidence.words().to_owned(),
+        from_memory: limit.confidence.is_memory(),
+    }
+}
+
+fn hydraulics_value(found: &Hydraulics) -> HydraulicsJson {
+    let state = match found.state {
+        FlowState::Modular => "modular",
+        FlowState::Drowned => "drowned",
+        FlowState::NotModular => "not_modular",
+        FlowState::NotChecked => "not_checked",
+    };
+    HydraulicsJson {
+        state: state.to_owned(),
+        tailwater_head_m: found.tailwater_head,
+        highest_modular_tailwater_head_m: found.highest_modular,
+        drowned_flow_factor: found.factor,
+    }
+}
+
 /// A budget as one JSON object.
 pub fn budget_json(budget: &Budget) -> String {
     pretty(&budget_value(budget))
@@ -273,6 +365,7 @@ fn budget_value(budget: &Budget) -> BudgetJson {
             head_m: budget.head,
             corrected_head_m: budget.corrected_head,
             month: budget.month,
+            tailwater_head_m: budget.tailwater,
         },
         result: ResultJson {
             name: budget.result.name.clone(),
@@ -325,7 +418,8 @@ fn budget_value(budget: &Budget) -> BudgetJson {
             .iter()
             .map(|(name, text)| EquationJson { name: name.clone(), text: text.clone() })
             .collect(),
-        limits: budget.limits.clone(),
+        limits: budget.limits.iter().map(limit_value).collect(),
+        hydraulics: budget.hydraulics.as_ref().map(hydraulics_value),
         warnings: budget
             .warnings
             .iter()
@@ -350,6 +444,7 @@ fn monte_carlo_value(budget: &Budget) -> Option<MonteCarloJson> {
         trials_without_flow: part.result.tally.dry,
         trials_outside_table: part.result.tally.outside_table,
         trials_undefined: part.result.tally.undefined,
+        trials_across_branch: part.result.tally.across,
         share_base_trials: part.base_trials,
     })
 }

@@ -7,6 +7,7 @@ mod budget;
 mod check;
 mod csv;
 mod document;
+mod heads;
 mod json;
 mod markdown;
 mod rounding;

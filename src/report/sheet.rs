@@ -19,6 +19,18 @@ pub fn sheet_document(sheet: &Sheet) -> Document {
     for regime in &sheet.regimes {
         regime_part(&mut page, regime, sheet.regimes.len() > 1);
     }
+    if !sheet.drowned.is_empty() {
+        page.heading("Drowned flow, with [tailwater]");
+    }
+    for drowned in &sheet.drowned {
+        page.paragraph(format!(
+            "drowned_flow = \"{}\": {}. {}, {}.",
+            drowned.name, drowned.when, drowned.source, drowned.confidence
+        ));
+        page.lines(drowned.equations.iter().map(|line| format!("{} = {}", line.name, line.text)));
+    }
+    page.heading("Checks besides the limits of use");
+    page.table(NUMBER_COLUMNS, sheet.checks.iter().map(number_row).collect());
     page.heading("Published numbers");
     page.table(NUMBER_COLUMNS, sheet.numbers.iter().map(number_row).collect());
     page.paragraph(FROM_MEMORY);
@@ -46,11 +58,11 @@ fn regime_part(page: &mut Document, regime: &RegimeSheet, several: bool) {
     page.lines(regime.derivatives.iter().map(|line| format!("{} = {}", line.name, line.text)));
     if regime.derivatives.iter().any(|line| line.name.starts_with("∂F")) {
         page.paragraph(
-            "Together: dQ/dx = ∂Q/∂x + ∂Q/∂H * dH/dx, by the implicit-function theorem.",
+            "A quantity y that is the root of F: dy/dx = -(∂F/∂x)/(∂F/∂y), dQ/dx = ∂Q/∂x + ∂Q/∂y * dy/dx, by the implicit-function theorem.",
         );
     }
     page.heading("Limits of use and uncertainty of the coefficient");
-    let rows = regime.limits.iter().chain([&regime.coefficient]).map(number_row).collect();
+    let rows = regime.limits.iter().chain(&regime.coefficient).map(number_row).collect();
     page.table(NUMBER_COLUMNS, rows);
 }
 
@@ -63,14 +75,17 @@ fn table_part(page: &mut Document, table: &TableSheet) {
     if table.columns.is_empty() {
         columns.push("#value".to_owned());
     } else {
-        columns.extend(table.columns.iter().map(|node| format!("#{}", significant(*node, 4))));
+        columns.extend(table.columns.iter().map(|node| format!("#{node}")));
     }
     let columns: Vec<&str> = columns.iter().map(String::as_str).collect();
     let rows = table
         .rows
         .iter()
         .map(|(node, values)| {
-            std::iter::once(node).chain(values).map(|value| significant(*value, 5)).collect()
+            let number = |value: &Option<f64>| {
+                value.map_or_else(|| "-".to_owned(), |value| significant(value, 5))
+            };
+            std::iter::once(node.clone()).chain(values.iter().map(number)).collect()
         })
         .collect();
     page.table(&columns, rows);

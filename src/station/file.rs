@@ -3,6 +3,7 @@
 use std::collections::BTreeMap;
 
 use sha2::{Digest, Sha256};
+use toml::Spanned;
 use toml::de::{DeTable, DeValue};
 
 use super::correlation::{self, StatedCorrelation};
@@ -11,6 +12,7 @@ use super::section::{Findings, Section};
 use super::source::{self, ErrorSource};
 use super::spread::Spread;
 use super::structure::{self, Kind, StationInput, StructureSection};
+use super::tailwater::{self, Tailwater};
 use crate::diagnostic::{Code, Diagnostic, Severity, Span, Warning};
 use crate::propagation::{Correlation, Distribution, Problem, Source, impossible};
 
@@ -27,6 +29,8 @@ pub struct Station {
     pub inputs: Vec<StationInput>,
     /// What the file says of the head; `None` for an equation without one.
     pub head: Option<Head>,
+    /// Where the level of the tailwater comes from; `None` if the file says nothing.
+    pub tailwater: Option<Tailwater>,
     /// The stated sources, in the order of the file.
     pub sources: Vec<ErrorSource>,
     /// Correlations between sources, by name.
@@ -159,12 +163,13 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     let head = head_section
         .and_then(|value| Section::of("[head]", value, findings))
         .map(|section| head::read(section, findings));
+    let tailwater_section = root.get("tailwater");
     let stated_sources = tables("error_source", &mut root, findings);
     let stated_correlations = tables("correlation", &mut root, findings);
     root.finish(findings);
     let stated_names: Vec<String> =
         stated_sources.iter().filter_map(|section| section.peek("name")).collect();
-    let Some(StructureSection { kind, inputs, unused }) = structure else {
+    let Some(StructureSection { mut kind, mut inputs, unused }) = structure else {
         // What can be told of the sources without knowing the inputs is told all the same.
         for section in stated_sources {
             source::read(section, None, findings);
@@ -181,7 +186,11 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
                 .help("an input of the equation is the head if it says so: h = \"head\""),
         );
     }
-    let automatic = automatic_names(&kind);
+    let tailwater = tailwater_section
+        .and_then(|value| read_tailwater(value, &mut kind, &mut inputs, findings));
+    let automatic = automatic_sources(&kind);
+    let replaceable = automatic;
+    let automatic: Vec<String> = replaceable.iter().map(|(name, _)| name.clone()).collect();
     let sources: Vec<ErrorSource> = stated_sources
         .into_iter()
         .filter_map(|section| source::read(section, Some((&inputs, &automatic)), findings))
@@ -201,7 +210,8 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
         check_correlations(&stated, &names, findings);
     }
     let mut warnings = warnings(&sources, &inputs, &unused);
-    warnings.extend(misplaced_replacements(&kind, &sources, &inputs));
+    warnings.extend(misplaced_replacements(&replaceable, &sources, &inputs));
+    warnings.extend(unstated(&kind, &sources, &inputs));
     let correlations = stated.into_iter().map(|each| (each.names, each.coefficient)).collect();
     let head = reads_head.then(|| head.unwrap_or_default());
     Some(Station {
@@ -210,6 +220,7 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
         kind,
         inputs,
         head,
+        tailwater,
         sources,
         correlations,
         warnings,
@@ -272,15 +283,31 @@ fn tables<'a, 'i>(
     items.iter().filter_map(|item| Section::of(format!("[[{key}]]"), item, findings)).collect()
 }
 
-/// Names of the sources that a structure brings with it.
-fn automatic_names(kind: &Kind) -> Vec<String> {
+fn read_tailwater(
+    value: &Spanned<DeValue<'_>>,
+    kind: &mut Kind,
+    inputs: &mut Vec<StationInput>,
+    findings: &mut Findings<'_>,
+) -> Option<Tailwater> {
+    let Kind::Catalogue(installation) = kind else {
+        findings.push(
+            Diagnostic::error(
+                Code::UnusedKey,
+                value.span(),
+                "[tailwater]: an equation of your own has its tailwater as an input",
+            )
+            .help("write it into the definitions, with an input for its level"),
+        );
+        return None;
+    };
+    let section = Section::of("[tailwater]", value, findings)?;
+    tailwater::read(section, installation, inputs, findings)
+}
+
+/// Name of each source that a structure brings with it, and the key of the input it acts on.
+fn automatic_sources(kind: &Kind) -> Vec<(String, String)> {
     match kind {
-        // All forms of a structure bring the same ones.
-        Kind::Catalogue(structure) => structure
-            .automatic_sources(&structure.regimes[0])
-            .iter()
-            .map(|source| source.name.to_owned())
-            .collect(),
+        Kind::Catalogue(installation) => installation.automatic_sources(),
         Kind::Own(_) => Vec::new(),
     }
 }
@@ -432,27 +459,46 @@ fn bare_problem(stated: &[StatedCorrelation], names: &[String]) -> Problem {
 /// Sources that take the place of an automatic one but act on another input: what that one stood for is
 /// then in nobody's hands.
 fn misplaced_replacements(
-    kind: &Kind,
+    automatic: &[(String, String)],
     sources: &[ErrorSource],
     inputs: &[StationInput],
 ) -> Vec<Warning> {
-    let Kind::Catalogue(structure) = kind else { return Vec::new() };
-    let automatic = structure.automatic_sources(&structure.regimes[0]);
     let mut warnings = Vec::new();
     for source in sources {
-        let replaced = automatic.iter().find(|each| source.replaces.as_deref() == Some(each.name));
-        let Some(replaced) = replaced else { continue };
-        if !source.inputs.iter().any(|input| inputs[*input].key == replaced.acts_on) {
+        let replaced = automatic.iter().find(|each| source.replaces.as_ref() == Some(&each.0));
+        let Some((replaced, acts_on)) = replaced else { continue };
+        if !source.inputs.iter().any(|input| inputs[*input].key == *acts_on) {
             warnings.push(Warning::new(
                 Code::ReplacedElsewhere,
                 format!(
                     "`{}` replaces `{}` but does not act on `{}`: no source is left for that",
-                    source.name, replaced.name, replaced.acts_on
+                    source.name, replaced, acts_on
                 ),
             ));
         }
     }
     warnings
+}
+
+/// Coefficients whose uncertainty nobody publishes and that no source of the file acts on; a drowned-flow
+/// factor likewise.
+fn unstated(kind: &Kind, sources: &[ErrorSource], inputs: &[StationInput]) -> Vec<Warning> {
+    let Kind::Catalogue(installation) = kind else { return Vec::new() };
+    let acted_on = |key: &String| {
+        sources.iter().any(|source| source.inputs.iter().any(|input| inputs[*input].key == *key))
+    };
+    installation
+        .unstated()
+        .into_iter()
+        .filter(|(keys, _)| !keys.iter().any(acted_on))
+        .map(|(keys, why)| {
+            let keys: Vec<String> = keys.iter().map(|key| format!("`{key}`")).collect();
+            Warning::new(
+                Code::NoCoefficientSource,
+                format!("no source acts on {}: {why}", keys.join(" or ")),
+            )
+        })
+        .collect()
 }
 
 fn warnings(

@@ -15,6 +15,17 @@ pub struct Head {
     /// The gauge's zero above the crest, as surveyed: a station whose zero lies below the crest reads
     /// high.
     pub zero_above_crest: Option<Stated>,
+    /// The largest head that the structure can take: the top of the plate, the freeboard.
+    pub maximum: Option<Stated>,
+    /// How far upstream of the crest or throat the head is read.
+    pub gauge_distance: Option<Stated>,
+}
+
+impl Head {
+    /// The largest head that is to be expected: the stated maximum, or the end of the range.
+    pub fn largest(&self) -> Option<&Stated> {
+        self.maximum.as_ref().or(self.range.as_ref().map(|[_, high]| high))
+    }
 }
 
 pub(super) fn read(mut section: Section<'_, '_>, findings: &mut Findings<'_>) -> Head {
@@ -58,8 +69,37 @@ pub(super) fn read(mut section: Section<'_, '_>, findings: &mut Findings<'_>) ->
             findings.error(Code::OutsideDomain, value.span(), title);
         }
     }
+    head.maximum = read_length("maximum", [1e-3, 20.0], &mut section, findings);
+    head.gauge_distance = read_length("gauge_distance", [0.0, 1000.0], &mut section, findings);
+    if let (Some([_, high]), Some(maximum)) = (&head.range, &head.maximum)
+        && high.value > maximum.value
+    {
+        let title = format!("`range` ends at {}, above the maximum of {}", high.text, maximum.text);
+        findings.push(
+            Diagnostic::error(Code::OutsideDomain, high.span.clone(), title)
+                .context(maximum.span.clone(), "more the structure cannot take")
+                .help("end the range at the maximum, or mend the maximum"),
+        );
+    }
     section.finish(findings);
     head
+}
+
+fn read_length(
+    key: &str,
+    domain: [f64; 2],
+    section: &mut Section<'_, '_>,
+    findings: &mut Findings<'_>,
+) -> Option<Stated> {
+    let value = section.get(key)?;
+    let stated = quantity::read(key, value, Some(Dimension::LENGTH), findings)?;
+    let [low, high] = domain;
+    if !(low..=high).contains(&stated.value) {
+        let title = format!("`{key}` cannot be {}: {low} m to {high} m is due", stated.text);
+        findings.error(Code::OutsideDomain, value.span(), title);
+        return None;
+    }
+    Some(stated)
 }
 
 fn check_order(

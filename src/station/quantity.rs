@@ -37,6 +37,12 @@ pub(super) fn read(
         findings.error(Code::WrongType, span, title);
         return None;
     };
+    if dimension == Some(Dimension::NONE)
+        && let Some(value) = slope(text)
+    {
+        let text = text.trim().to_owned();
+        return Some(Stated { value, unit: Unit::one(), text, span });
+    }
     match Quantity::parse(text) {
         Ok(quantity) => checked(what, text, quantity, span, dimension, findings),
         Err(error) => {
@@ -44,6 +50,14 @@ pub(super) fn read(
             None
         }
     }
+}
+
+/// A slope as it is usually written, vertical : horizontal, as the horizontal part of 1 vertical.
+fn slope(text: &str) -> Option<f64> {
+    let (vertical, horizontal) = text.split_once(':')?;
+    let [vertical, horizontal] = [vertical, horizontal].map(|part| part.trim().parse::<f64>().ok());
+    let slope = horizontal? / vertical?;
+    (slope.is_finite() && slope >= 0.0 && crate::units::is_plausible(slope)).then_some(slope)
 }
 
 fn bare_number(

@@ -7,9 +7,14 @@ use super::size::Size;
 use super::source::ErrorSource;
 use super::structure::{Evidence, Kind, StationInput, mean, standard_deviation};
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{AutomaticSource, Regime, Structure, Values};
+use super::tailwater::Tailwater;
+use crate::model::structures::{
+    AutomaticSource, Form, Installation, SecondHead, TAILWATER_HEAD, Values,
+};
 use crate::model::{Citation, Confidence, Fault, Model, Outcome};
-use crate::propagation::{Action, Correlation, Distribution, Effect, Problem, Source};
+use crate::propagation::{
+    Action, Correlation, Distribution, Effect, Problem, Source, corrected,
+};
 
 /// A station at one head.
 #[derive(Clone, Debug)]
@@ -18,14 +23,22 @@ pub struct Setting {
     pub problem: Problem,
     /// For each source of the problem, in the same order.
     pub rows: Vec<SourceRow>,
-    /// The structure and the form of its equation; `None` for an equation of the user's own.
-    pub regime: Option<(&'static Structure, &'static Regime)>,
+    /// The form of the structure's equation; `None` for an equation of the user's own.
+    pub form: Option<Form>,
     /// What is doubtful about the question at this head.
     pub warnings: Vec<Warning>,
 }
 
-/// A structure and the form of its equation that holds.
-type Form = (&'static Structure, &'static Regime);
+/// The moment that is asked about.
+#[derive(Clone, Copy, Debug, Default, PartialEq)]
+pub struct Moment {
+    /// Indicated head, m; `None` for an equation that reads none.
+    pub head: Option<f64>,
+    /// Indicated head of the tailwater, m, in place of what the file says.
+    pub tailwater: Option<f64>,
+    /// The month, 1 to 12, whose sources count; `None`: all.
+    pub month: Option<u32>,
+}
 
 /// What a source of a problem is in the file.
 #[derive(Clone, Debug, PartialEq)]
@@ -48,6 +61,8 @@ pub struct SourceRow {
     pub replaces: Option<String>,
     /// A correction that the file states as such: no row of the budget.
     pub is_correction: bool,
+    /// It is the published uncertainty of a coefficient, which holds within limits.
+    pub is_coefficient: bool,
 }
 
 /// A shift by the error itself.
@@ -65,6 +80,12 @@ pub enum Refusal {
     /// A head is given to an equation that reads none.
     #[error("this equation reads no head")]
     HeadNotRead,
+    /// The tailwater is a column of the record.
+    #[error("the tailwater is a column of the record: give --tailwater for one head")]
+    NoTailwater,
+    /// A tailwater is given to a station that has none.
+    #[error("this station states no [tailwater]")]
+    TailwaterNotRead,
     /// The equation cannot be built, which reading rules out.
     #[error("the equation cannot be built: {}", .0.first().map(ToString::to_string).unwrap_or_default())]
     Equation(Vec<Fault>),
@@ -85,57 +106,24 @@ pub enum Refusal {
 }
 
 impl Station {
-    /// The station at an indicated head (for an equation that reads none, `None`).
-    ///
-    /// `month`, 1 to 12, leaves out the sources that are not there in that month.
+    /// The station at a moment.
     ///
     /// # Errors
     ///
     /// [`Refusal`] where there is no head to work at, or one too many.
-    pub fn at(&self, head: Option<f64>, month: Option<u32>) -> Result<Setting, Refusal> {
-        match (&self.head, head) {
-            (Some(_), None) => return Err(Refusal::NoHead),
-            (None, Some(_)) => return Err(Refusal::HeadNotRead),
-            _ => {}
-        }
-        let indicated = |input: &StationInput| match input.key.as_str() {
-            "head" => head,
-            _ => input.value,
+    pub fn at(&self, moment: Moment) -> Result<Setting, Refusal> {
+        self.check_moment(moment)?;
+        let mut inputs = self.indicated_inputs(moment);
+        let (mut model, form) = self.model(moment, &mut inputs)?;
+        let Builder { mut sources, mut rows, mut warnings, .. } = self.known(moment, &inputs);
+        let shared = match &form {
+            Some(form) => {
+                let corrected = corrected(&inputs, &sources);
+                self.published(&mut model, form, &corrected, &mut sources, &mut rows)
+            }
+            None => Vec::new(),
         };
-        let (mut model, regime) = self.model(&indicated)?;
-        let mut inputs: Vec<f64> =
-            self.inputs.iter().map(|input| indicated(input).unwrap_or(f64::NAN)).collect();
-        // A width that is left out does not enter the equation; no value of it may spread as NaN.
-        inputs.iter_mut().filter(|value| value.is_nan()).for_each(|value| *value = 0.0);
-        let mut builder = Builder {
-            station: self,
-            indicated: &inputs,
-            sources: Vec::new(),
-            rows: Vec::new(),
-            warnings: Vec::new(),
-        };
-        builder.stated(month);
-        builder.surveyed_zero();
-        builder.observed();
-        let Builder { mut sources, mut rows, mut warnings, .. } = builder;
-        if let Some((structure, form)) = regime {
-            let known = Problem {
-                outputs: vec![model.result()],
-                model: model.clone(),
-                indicated: inputs.clone(),
-                sources: sources.clone(),
-                correlations: Vec::new(),
-            };
-            self.published(
-                &mut model,
-                structure,
-                form,
-                &known.corrected(),
-                &mut sources,
-                &mut rows,
-            );
-        }
-        let correlations = self.correlate(&sources, &mut warnings);
+        let correlations = self.correlate(&sources, &shared, &mut warnings);
         let problem = Problem {
             outputs: vec![model.result()],
             model,
@@ -143,80 +131,180 @@ impl Station {
             sources,
             correlations,
         };
-        Ok(Setting { problem, rows, regime, warnings })
+        Ok(Setting { problem, rows, form, warnings })
     }
 
-    fn model(
-        &self,
-        indicated: &dyn Fn(&StationInput) -> Option<f64>,
-    ) -> Result<(Model, Option<Form>), Refusal> {
-        match &self.kind {
-            Kind::Own(equation) => {
-                Ok((Model::build(&equation.blueprint).map_err(Refusal::Equation)?, None))
-            }
-            Kind::Catalogue(structure) => {
-                let values: Vec<(&'static str, Option<f64>)> = structure
-                    .all_inputs()
-                    .iter()
-                    .zip(&self.inputs)
-                    .map(|(spec, input)| (spec.key, indicated(input)))
-                    .collect();
-                let regime = (structure.regime_for)(&Values(&values));
-                let model =
-                    Model::build(&structure.blueprint(regime)).map_err(Refusal::Equation)?;
-                Ok((model, Some((structure, &structure.regimes[regime]))))
-            }
+    /// The form of the structure's equation at a moment, and the corrected inputs, for a look at many
+    /// heads: nothing is built. `None` for an equation of the user's own. A tailwater that follows the
+    /// discharge is left to the rating.
+    ///
+    /// # Errors
+    ///
+    /// As [`Station::at`].
+    pub fn sketch(&self, moment: Moment) -> Result<Option<(Form, Vec<f64>)>, Refusal> {
+        self.check_moment(moment)?;
+        let Kind::Catalogue(installation) = &self.kind else { return Ok(None) };
+        let inputs = self.indicated_inputs(moment);
+        let known = self.known(moment, &inputs);
+        let form = installation.form(&self.values(moment));
+        Ok(Some((form, corrected(&inputs, &known.sources))))
+    }
+
+    fn check_moment(&self, moment: Moment) -> Result<(), Refusal> {
+        match (&self.head, moment.head) {
+            (Some(_), None) => return Err(Refusal::NoHead),
+            (None, Some(_)) => return Err(Refusal::HeadNotRead),
+            _ => {}
+        }
+        match (&self.tailwater, moment.tailwater) {
+            (Some(Tailwater::Column { .. }), None) => Err(Refusal::NoTailwater),
+            (None, Some(_)) => Err(Refusal::TailwaterNotRead),
+            _ => Ok(()),
         }
     }
 
+    /// The indicated value of an input; `None` if it is left out, or follows the discharge.
+    fn indicated(moment: Moment, input: &StationInput) -> Option<f64> {
+        match input.key.as_str() {
+            "head" => moment.head,
+            key if key == TAILWATER_HEAD.key => moment.tailwater.or(input.value),
+            _ => input.value,
+        }
+    }
+
+    /// All of them; what is left out does not enter the equation, and no value of it may spread as NaN.
+    fn indicated_inputs(&self, moment: Moment) -> Vec<f64> {
+        self.inputs.iter().map(|input| Self::indicated(moment, input).unwrap_or(0.0)).collect()
+    }
+
+    fn values(&self, moment: Moment) -> Values {
+        Values::new(
+            self.inputs.iter().map(|input| (input.key.clone(), Self::indicated(moment, input))),
+        )
+    }
+
+    /// The sources that the file states, known biases among them.
+    fn known<'s>(&'s self, moment: Moment, inputs: &'s [f64]) -> Builder<'s> {
+        let mut builder = Builder {
+            station: self,
+            indicated: inputs,
+            sources: Vec::new(),
+            rows: Vec::new(),
+            warnings: Vec::new(),
+        };
+        builder.stated(moment.month);
+        builder.surveyed_zero();
+        builder.observed();
+        builder
+    }
+
+    /// The model at indicated values. Where the tailwater follows the discharge, its level is put among
+    /// them.
+    fn model(
+        &self,
+        moment: Moment,
+        inputs: &mut [f64],
+    ) -> Result<(Model, Option<Form>), Refusal> {
+        let installation = match &self.kind {
+            Kind::Own(equation) => {
+                let model = Model::build(&equation.blueprint).map_err(Refusal::Equation)?;
+                return Ok((model, None));
+            }
+            Kind::Catalogue(installation) => installation,
+        };
+        let values = self.values(moment);
+        let build = |installation: &Installation| {
+            let form = installation.form(&values);
+            let model = Model::build(&form.blueprint).map_err(Refusal::Equation)?;
+            Ok((model, Some(form)))
+        };
+        let place = self.inputs.iter().position(|input| input.key == TAILWATER_HEAD.key);
+        let rated = installation.second_head.as_ref().and_then(|second| second.rating.as_ref());
+        let (Some((rating, _)), Some(place)) = (rated, place) else { return build(installation) };
+        let mut installation = installation.as_ref().clone();
+        let level = match moment.tailwater {
+            // A level that is asked about stands, whatever the rating says.
+            Some(level) => {
+                set_rating(&mut installation, None);
+                level
+            }
+            None => {
+                let (mut model, _) = build(&installation)?;
+                let level = model.expression("h_2").map_err(Refusal::Equation)?.0;
+                let level = model.evaluate(&[level], inputs).0[0];
+                let level = if level.is_nan() { 0.0 } else { level };
+                set_rating(&mut installation, Some((rating.clone(), level)));
+                level
+            }
+        };
+        inputs[place] = level;
+        build(&installation)
+    }
+
     /// The sources that the structure brings with it, at the corrected inputs.
+    ///
+    /// Gives the pairs of them that share their cause.
     fn published(
         &self,
         model: &mut Model,
-        structure: &'static Structure,
-        form: &'static Regime,
+        form: &Form,
         corrected: &[f64],
         sources: &mut Vec<Source>,
         rows: &mut Vec<SourceRow>,
-    ) {
-        let replaced =
-            |name: &str| self.sources.iter().any(|source| source.replaces.as_deref() == Some(name));
-        for automatic in structure.automatic_sources(form) {
-            let AutomaticSource { name, acts_on, rule, scales, words, published } = automatic;
+    ) -> Vec<Correlation> {
+        let replaced = |name: &String| {
+            self.sources.iter().any(|source| source.replaces.as_ref() == Some(name))
+        };
+        let mut causes: Vec<(usize, &str)> = Vec::new();
+        for automatic in &form.automatic {
+            let AutomaticSource { name, acts_on, rule, scales, words, .. } = automatic;
             let Some(input) = model.input(acts_on).filter(|_| !replaced(name)) else { continue };
             let Ok((rule, _)) = model.expression(rule) else { continue };
             let (values, _) = model.evaluate(&[rule], corrected);
             // Published at 95 %: half of it is the standard uncertainty, and per cent are hundredths.
-            let standard_uncertainty = values[0] * if scales { 0.5 / 100.0 } else { 1.0 };
-            let action = if scales { Action::Scale } else { PLAIN_SHIFT };
-            let size = if scales {
+            let standard_uncertainty = values[0] * if *scales { 0.5 / 100.0 } else { 1.0 };
+            let action = if *scales { Action::Scale } else { PLAIN_SHIFT };
+            let size = if *scales {
                 format!("{} % at 95 %", round_digits(values[0]))
             } else {
-                words.to_owned()
+                words.clone()
             };
+            causes.push((sources.len(), &automatic.cause));
             sources.push(Source {
-                name: name.to_owned(),
+                name: name.clone(),
                 effects: vec![Effect { input, action }],
                 distribution: Distribution::Normal { mean: 0.0, standard_uncertainty },
                 degrees_of_freedom: f64::INFINITY,
             });
             rows.push(SourceRow {
-                acts_on: vec![acts_on.to_owned()],
-                scales,
-                unit: if scales { "1".to_owned() } else { "m".to_owned() },
+                acts_on: vec![acts_on.clone()],
+                scales: *scales,
+                unit: if *scales { "1".to_owned() } else { "m".to_owned() },
                 size,
                 fixed_until: "rebuilding".to_owned(),
                 evidence: Evidence::default(),
-                published: Some(published),
+                published: Some(automatic.published),
                 replaces: None,
                 is_correction: false,
+                is_coefficient: automatic.is_coefficient,
             });
         }
+        let pairs = causes.iter().enumerate().flat_map(|(index, (second, cause))| {
+            let same = causes[..index].iter().filter(move |(_, other)| other == cause);
+            same.map(|(first, _)| Correlation { sources: [*first, *second], coefficient: 1.0 })
+        });
+        pairs.collect()
     }
 
-    fn correlate(&self, sources: &[Source], warnings: &mut Vec<Warning>) -> Vec<Correlation> {
+    /// Correlations that the file states, and those of sources that share their cause.
+    fn correlate(
+        &self,
+        sources: &[Source],
+        shared: &[Correlation],
+        warnings: &mut Vec<Warning>,
+    ) -> Vec<Correlation> {
         let place = |name: &String| sources.iter().position(|source| source.name == *name);
-        let correlations: Vec<Correlation> = self
+        let mut correlations: Vec<Correlation> = self
             .correlations
             .iter()
             .filter_map(|([a, b], coefficient)| {
@@ -240,6 +328,14 @@ impl Station {
                     shaped.join(", ")
                 ),
             ));
+        }
+        let stated = correlations.len();
+        for each in shared {
+            let named = |index: usize| correlations[..stated].iter().any(|c| c.sources.contains(&index));
+            // What the file says of either stands.
+            if !each.sources.into_iter().any(named) {
+                correlations.push(each.clone());
+            }
         }
         correlations
     }
@@ -272,6 +368,13 @@ impl Station {
             }
             _ => Ok(()),
         }
+    }
+}
+
+/// Puts another rating in the place of an installation's.
+fn set_rating(installation: &mut Installation, rating: Option<(crate::model::expression::Table, f64)>) {
+    if let Some(second) = installation.second_head.take() {
+        installation.second_head = Some(SecondHead { rating, ..second });
     }
 }
 
@@ -347,6 +450,7 @@ impl Builder<'_> {
             published: None,
             replaces: stated.replaces.clone(),
             is_correction: false,
+            is_coefficient: false,
         });
     }
 
@@ -388,6 +492,7 @@ impl Builder<'_> {
             published: None,
             replaces: None,
             is_correction: true,
+            is_coefficient: false,
         });
     }
 
@@ -417,6 +522,7 @@ impl Builder<'_> {
                 published: None,
                 replaces: None,
                 is_correction: false,
+                is_coefficient: false,
             });
         }
     }

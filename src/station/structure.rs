@@ -3,20 +3,22 @@
 use toml::Spanned;
 use toml::de::DeValue;
 
+use super::compound;
 use super::equation::{self, Equation};
 use super::quantity;
 use super::section::{Findings, Section, article};
 use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::structures::{
-    CATALOGUE, GRAVITY, InputSpec, KINETIC_ENERGY_COEFFICIENT, Structure, find,
+    CATALOGUE, COMPOUND, Choice, GRAVITY, InputSpec, InstalledInput, Installation,
+    KINETIC_ENERGY_COEFFICIENT, find,
 };
 use crate::units::{Dimension, Unit};
 
 /// The kind of a station's structure.
 #[derive(Clone, Debug)]
 pub enum Kind {
-    /// One of the catalogue.
-    Catalogue(&'static Structure),
+    /// One of the catalogue, as it is installed.
+    Catalogue(Box<Installation>),
     /// An equation of the user's own.
     Own(Box<Equation>),
 }
@@ -79,16 +81,15 @@ pub(super) fn read(
         unknown_kind(&kind, value, findings);
         return None;
     };
-    let mut inputs = Vec::new();
-    for spec in structure.all_inputs() {
-        if spec.key == "head" {
-            inputs.push(input_without_value(&spec));
-        } else {
-            // An input with a fault stays an input, so that what acts on it is not reported as well.
-            let read = read_input(&mut section, &spec, findings);
-            inputs.push(read.unwrap_or_else(|| input_without_value(&spec)));
-        }
+    let mut installation = Installation::plain(structure);
+    if let Some(choice) = &structure.choice {
+        installation.option = read_choice(&mut section, choice, findings).unwrap_or(0);
     }
+    let mut of_sections = Vec::new();
+    if structure.kind == COMPOUND {
+        (installation.sections, of_sections) = compound::read(&mut section, findings)?;
+    }
+    let inputs = read_inputs(&installation, of_sections, &mut section, findings);
     let mut unused = Vec::new();
     // Every structure takes the key; thin plates have no velocity head for it to act on.
     if !inputs.iter().any(|input| input.key == KINETIC_ENERGY_COEFFICIENT.key)
@@ -99,14 +100,57 @@ pub(super) fn read(
     }
     section.finish(findings);
     check_widths(&inputs, findings);
-    Some(StructureSection { kind: Kind::Catalogue(structure), inputs, unused })
+    Some(StructureSection { kind: Kind::Catalogue(Box::new(installation)), inputs, unused })
+}
+
+/// The inputs of an installation in their order; those of its sections have been read already.
+fn read_inputs(
+    installation: &Installation,
+    of_sections: Vec<StationInput>,
+    section: &mut Section<'_, '_>,
+    findings: &mut Findings<'_>,
+) -> Vec<StationInput> {
+    let mut of_sections = of_sections.into_iter();
+    let mut read = |input: &InstalledInput| match input.key.as_str() {
+        "head" => None,
+        key if key == input.spec.key => read_input(section, &input.spec, findings),
+        _ => of_sections.next(),
+    };
+    installation
+        .inputs()
+        .iter()
+        // An input with a fault stays an input, so that what acts on it is not reported as well.
+        .map(|input| read(input).unwrap_or_else(|| input_without_value(input)))
+        .collect()
+}
+
+/// The word that picks a set of constants: the size of a flume, say.
+pub(super) fn read_choice(
+    section: &mut Section<'_, '_>,
+    choice: &Choice,
+    findings: &mut Findings<'_>,
+) -> Option<usize> {
+    let words: Vec<&str> = choice.options.iter().map(|(word, _)| *word).collect();
+    let help = format!("one of: {}", words.join(", "));
+    let value = section.need(choice.key, &help, findings)?;
+    let word = super::section::string(choice.key, value, findings)?;
+    let found = choice.find(&word);
+    if found.is_none() {
+        let title = format!("`{}` cannot be \"{}\"", choice.key, shown(&word));
+        let diagnostic = Diagnostic::error(Code::UnknownWord, value.span(), title).help(help);
+        findings.push(match nearest(&word, words) {
+            Some(near) => diagnostic.fix(value.span(), format!("\"{near}\"")),
+            None => diagnostic,
+        });
+    }
+    found
 }
 
 /// No crest or throat is wider than the channel that leads to it.
 fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
     let find = |key: &str| inputs.iter().find(|input| input.key == key);
     let Some(approach) = find("approach_width") else { return };
-    for control in ["crest_width", "throat_width"].into_iter().filter_map(find) {
+    for control in ["crest_width", "throat_width", "throat_diameter"].into_iter().filter_map(find) {
         let (Some(control_width), Some(approach_width)) = (control.value, approach.value) else {
             continue;
         };
@@ -127,7 +171,16 @@ fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
 }
 
 fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) {
-    let kinds = CATALOGUE.iter().map(|structure| structure.kind).chain([equation::KIND]);
+    report_kind(kind, value, CATALOGUE.iter().map(|each| each.kind).chain([equation::KIND]), findings);
+}
+
+/// A kind that is none of those that could stand there.
+pub(super) fn report_kind<'k>(
+    kind: &str,
+    value: &Spanned<DeValue<'_>>,
+    kinds: impl Iterator<Item = &'k str> + Clone,
+    findings: &mut Findings<'_>,
+) {
     let shown = shown(kind);
     let title = format!("`{shown}` is no kind of structure that nappe knows");
     let mut diagnostic = Diagnostic::error(Code::UnknownWord, value.span(), title);
@@ -140,12 +193,14 @@ fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Finding
     findings.push(diagnostic);
 }
 
-fn input_without_value(spec: &InputSpec) -> StationInput {
+/// An input of which the file says nothing: with its default, if it has one.
+pub(super) fn input_without_value(input: &InstalledInput) -> StationInput {
+    let InstalledInput { key, symbol, spec } = input;
     StationInput {
-        key: spec.key.to_owned(),
-        symbol: spec.symbol.to_owned(),
+        key: key.clone(),
+        symbol: symbol.clone(),
         dimension: spec.dimension,
-        value: spec.default.filter(|value| !value.is_nan()),
+        value: spec.default_value(),
         text: String::new(),
         unit: Unit::si(spec.dimension),
         span: None,
@@ -166,7 +221,7 @@ pub(super) fn read_input(
         let help = format!("{}; for example {} = \"{}\"", spec.meaning, spec.key, spec.example);
         Some(section.need(spec.key, &help, findings)?)
     };
-    let Some(value) = value else { return Some(input_without_value(spec)) };
+    let Some(value) = value else { return Some(input_without_value(&(*spec).into())) };
     let mut input = read_value(spec.key, value, Some(spec.dimension), findings)?;
     spec.symbol.clone_into(&mut input.symbol);
     let [low, high] = spec.domain;
@@ -312,5 +367,5 @@ pub(super) fn gravity_of(
     section: &mut Section<'_, '_>,
     findings: &mut Findings<'_>,
 ) -> StationInput {
-    read_input(section, &GRAVITY, findings).unwrap_or_else(|| input_without_value(&GRAVITY))
+    read_input(section, &GRAVITY, findings).unwrap_or_else(|| input_without_value(&GRAVITY.into()))
 }

@@ -1,6 +1,6 @@
 //! At which head a question is asked.
 
-use crate::station::{Refusal, Station};
+use crate::station::{Moment, Refusal, Station};
 
 /// At which head a question is asked.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -13,15 +13,15 @@ pub enum At {
     Flow(f64),
 }
 
-/// The indicated head that is asked about.
-pub(super) fn find_head(
-    station: &Station,
-    at: At,
-    month: Option<u32>,
-) -> Result<Option<f64>, Refusal> {
+/// The moment that is asked about: `moment` with its head.
+pub(super) fn find_moment(station: &Station, at: At, moment: Moment) -> Result<Moment, Refusal> {
+    Ok(Moment { head: find_head(station, at, moment)?, ..moment })
+}
+
+fn find_head(station: &Station, at: At, moment: Moment) -> Result<Option<f64>, Refusal> {
     match at {
         At::Head(head) => Ok(Some(head)),
-        At::Flow(flow) => head_for_flow(station, flow, month).map(Some),
+        At::Flow(flow) => head_for_flow(station, flow, moment).map(Some),
         At::Middle => match &station.head {
             None => Ok(None),
             Some(head) => match &head.range {
@@ -38,12 +38,12 @@ const LOWEST_HEAD: f64 = -5.0;
 
 /// The indicated head at which the corrected result is `flow`, by bisection: the result grows with the
 /// head, but may jump where the form of the equation changes.
-fn head_for_flow(station: &Station, flow: f64, month: Option<u32>) -> Result<f64, Refusal> {
+fn head_for_flow(station: &Station, flow: f64, moment: Moment) -> Result<f64, Refusal> {
     if station.head.is_none() {
         return Err(Refusal::HeadNotRead);
     }
     let flow_at = |head: f64| -> Result<f64, Refusal> {
-        let mut setting = station.at(Some(head), month)?;
+        let mut setting = station.at(Moment { head: Some(head), ..moment })?;
         let corrected = setting.problem.corrected();
         let outputs = setting.problem.outputs.clone();
         Ok(setting.problem.model.evaluate(&outputs, &corrected).0[0])

@@ -1,15 +1,17 @@
 //! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::PUBLISHED_COEFFICIENT;
+use crate::model::structures::{LimitKind, TAILWATER_HEAD};
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
 use crate::propagation::{Agreement, Coverage, Linear, Share, linear, shares};
-use crate::station::{Evidence, Kind, Refusal, Setting, Station};
+use crate::station::{Evidence, Kind, Moment, Refusal, Setting, Station};
 use crate::units::{Unit, significant};
 
-use super::at::{At, find_head};
-use super::limits::{LimitState, limit_states, limit_warnings};
-use super::warnings::{freedom_warning, memory_warning, table_warnings, trial_warnings};
+use super::at::{At, find_moment};
+use super::hydraulics::{Hydraulics, hydraulics};
+use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
+use super::range::{failing_heads, note_failing_heads};
+use super::warnings::{branch_warnings, freedom_warning, memory_warning, table_warnings, trial_warnings};
 
 /// What is asked.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -22,6 +24,8 @@ pub struct Question {
     pub trials: Option<Amount>,
     /// Seed of the random numbers.
     pub seed: u64,
+    /// Indicated head of the tailwater, m, in place of what the file says.
+    pub tailwater: Option<f64>,
     /// The month of the year, 1 to 12, for sources that are there in some months only.
     pub month: Option<u32>,
 }
@@ -45,6 +49,8 @@ pub struct Budget {
     pub head: Option<f64>,
     /// Corrected head, m.
     pub corrected_head: Option<f64>,
+    /// Indicated head of the tailwater, m; `None` where the file states none.
+    pub tailwater: Option<f64>,
     /// The month asked about.
     pub month: Option<u32>,
     /// The equations, name and right-hand side.
@@ -69,6 +75,8 @@ pub struct Budget {
     pub corrections: Vec<Correction>,
     /// The limits of use.
     pub limits: Vec<LimitState>,
+    /// Whether the flow is modular; `None` for an equation of the user's own.
+    pub hydraulics: Option<Hydraulics>,
     /// Caveats.
     pub warnings: Vec<Warning>,
 }
@@ -194,8 +202,10 @@ pub fn budget(
     question: &Question,
     progress: &(dyn Fn(u64) + Sync),
 ) -> Result<Budget, Refusal> {
-    let head = find_head(station, question.at, question.month)?;
-    let mut setting = station.at(head, question.month)?;
+    let Question { tailwater, month, .. } = *question;
+    let moment = find_moment(station, question.at, Moment { head: None, tailwater, month })?;
+    let head = moment.head;
+    let mut setting = station.at(moment)?;
     let corrected = setting.problem.corrected();
     let linear = linear(&mut setting.problem).swap_remove(0);
     let finite = linear.value.is_finite() && linear.standard_uncertainty.is_finite();
@@ -203,12 +213,15 @@ pub fn budget(
     let (coverage_factor, expanded_uncertainty) = linear.expanded(question.coverage);
     let mut warnings = station.warnings.clone();
     warnings.append(&mut setting.warnings);
-    let limits = match setting.regime {
-        Some((_, regime)) => limit_states(&mut setting.problem.model, regime, &corrected),
+    let mut limits = match &setting.form {
+        Some(form) => limit_states(&mut setting.problem.model, form, &corrected),
         None => Vec::new(),
     };
-    warnings.extend(limit_warnings(&limits));
+    note_failing_heads(&mut limits, &failing_heads(station, moment).unwrap_or_default());
+    limits.extend(station_limits(station, moment));
+    warnings.extend(limit_warnings(&limits, setting.form.as_ref()));
     warnings.extend(table_warnings(&mut setting, &corrected));
+    warnings.extend(branch_warnings(&setting));
     warnings.extend(freedom_warning(&linear));
     let monte_carlo = run_monte_carlo(
         &mut setting,
@@ -230,10 +243,15 @@ pub fn budget(
         kind: kind.0,
         title: kind.1,
         standard: kind.2,
-        regime: setting.regime.map_or_else(String::new, |(_, regime)| regime.name.to_owned()),
+        regime: setting.form.as_ref().map_or_else(String::new, |form| form.regime.clone()),
         digest: station.digest.clone(),
         head,
         corrected_head: head.and(setting.problem.model.input("head")).map(|input| corrected[input]),
+        tailwater: setting
+            .problem
+            .model
+            .input(TAILWATER_HEAD.key)
+            .map(|input| setting.problem.indicated[input]),
         month: question.month,
         equations: equations(&setting),
         inputs: input_rows(station, &setting, &corrected),
@@ -244,6 +262,7 @@ pub fn budget(
         monte_carlo,
         rows,
         corrections: corrections(&setting, &linear),
+        hydraulics: hydraulics(&mut setting, &limits, &corrected),
         limits,
         warnings,
         linear,
@@ -252,10 +271,10 @@ pub fn budget(
 
 fn kind_words(station: &Station) -> (String, String, String) {
     match &station.kind {
-        Kind::Catalogue(structure) => (
-            structure.kind.to_owned(),
-            structure.title.to_owned(),
-            structure.standard.document.to_owned(),
+        Kind::Catalogue(installation) => (
+            installation.structure.kind.to_owned(),
+            installation.structure.title.to_owned(),
+            installation.structure.standard.document.to_owned(),
         ),
         Kind::Own(_) => {
             ("equation".to_owned(), "An equation of the station's own".to_owned(), String::new())
@@ -399,7 +418,9 @@ fn rows(
     corrected: &[f64],
 ) -> Vec<BudgetRow> {
     let problem = &setting.problem;
-    let outside = limits.iter().any(|limit| !limit.kept);
+    let outside = limits
+        .iter()
+        .any(|limit| !limit.kept && limit.limit.kind != LimitKind::Station);
     let groups = problem.groups();
     linear
         .ranking()
@@ -434,7 +455,7 @@ fn rows(
                 published: row
                     .published
                     .map(|(by, known)| (by.document.to_owned(), known.words().to_owned())),
-                outside_limits: outside && source.name == PUBLISHED_COEFFICIENT,
+                outside_limits: outside && row.is_coefficient,
                 replaces: row.replaces.clone(),
             }
         })

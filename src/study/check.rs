@@ -1,11 +1,13 @@
 //! The check of a station file beyond its reading: does it answer over its whole range of heads.
 
 use crate::diagnostic::Warning;
+use crate::model::structures::InstalledLimit;
 use crate::propagation::linear;
-use crate::station::{Kind, Refusal, Station};
+use crate::station::{Kind, Moment, Refusal, Station};
 use crate::units::Unit;
 
-use super::limits::{LimitState, limit_states};
+use super::limits::{LimitState, limit_states, station_limits};
+use super::range::failing_heads;
 
 /// What a station is, and how it fares over its range.
 #[derive(Clone, Debug)]
@@ -22,8 +24,21 @@ pub struct Check {
     pub stated_unit: Option<Unit>,
     /// For each end of the range of heads: the head, the discharge, and the limits that are not kept.
     pub ends: Vec<CheckedEnd>,
+    /// Limits that are not kept somewhere in the range, with the heads; `None` where no range is stated.
+    pub failing: Option<Vec<FailingLimit>>,
+    /// What the station states of itself that does not fit: the gauge too near, say.
+    pub misfits: Vec<LimitState>,
     /// What is doubtful about the file.
     pub warnings: Vec<Warning>,
+}
+
+/// A limit that is not kept at some heads of the range.
+#[derive(Clone, Debug)]
+pub struct FailingLimit {
+    /// The limit.
+    pub limit: InstalledLimit,
+    /// The indicated heads, from and to, m.
+    pub heads: Vec<[f64; 2]>,
 }
 
 /// One end of the range of heads.
@@ -45,7 +60,7 @@ pub fn check(station: &Station) -> Check {
     };
     let ends = heads
         .into_iter()
-        .map(|head| match station.at(head, None) {
+        .map(|head| match station.at(Moment { head, ..Moment::default() }) {
             Err(refusal) => CheckedEnd { head, result: Err(refusal), broken: Vec::new() },
             Ok(mut setting) => {
                 let found = linear(&mut setting.problem).swap_remove(0);
@@ -55,8 +70,8 @@ pub fn check(station: &Station) -> Check {
                     .check_outcome(found.outcome, head, finite)
                     .map(|()| (found.value, unit));
                 let corrected = setting.problem.corrected();
-                let limits = setting.regime.map_or_else(Vec::new, |(_, regime)| {
-                    limit_states(&mut setting.problem.model, regime, &corrected)
+                let limits = setting.form.as_ref().map_or_else(Vec::new, |form| {
+                    limit_states(&mut setting.problem.model, form, &corrected)
                 });
                 // Without a flow there is nothing to hold against the limits.
                 let broken =
@@ -67,9 +82,9 @@ pub fn check(station: &Station) -> Check {
         .collect();
     let replaced = station.sources.iter().filter(|source| source.replaces.is_some()).count();
     let (kind, automatic_sources, stated_unit) = match &station.kind {
-        Kind::Catalogue(structure) => {
-            let brought = structure.automatic_sources(&structure.regimes[0]).len();
-            (structure.kind.to_owned(), brought.saturating_sub(replaced), None)
+        Kind::Catalogue(installation) => {
+            let brought = installation.automatic_sources().len();
+            (installation.structure.kind.to_owned(), brought.saturating_sub(replaced), None)
         }
         Kind::Own(equation) => ("equation".to_owned(), 0, Some(equation.unit.clone())),
     };
@@ -80,6 +95,19 @@ pub fn check(station: &Station) -> Check {
         automatic_sources,
         stated_unit,
         ends,
+        failing: failing_heads(station, Moment::default()).map(failing_limits),
+        misfits: station_limits(station, Moment::default())
+            .into_iter()
+            .filter(|state| !state.kept)
+            .collect(),
         warnings: station.warnings.clone(),
     }
+}
+
+fn failing_limits(found: Vec<(InstalledLimit, Vec<[f64; 2]>)>) -> Vec<FailingLimit> {
+    found
+        .into_iter()
+        .filter(|(_, heads)| !heads.is_empty())
+        .map(|(limit, heads)| FailingLimit { limit, heads })
+        .collect()
 }

@@ -1,81 +1,149 @@
-//! Limits of use at one head: what is there against what a standard allows.
-
-use schemars::JsonSchema;
-use serde::Serialize;
+//! Limits at one head: what is there against what a standard, the hydraulics and the station allow.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::Model;
-use crate::model::structures::Regime;
+use crate::model::structures::{Form, InstalledLimit, LimitKind};
+use crate::model::{Confidence, Model, Side};
+use crate::station::{Moment, Station};
 use crate::units::significant;
 
 /// A limit against what is there.
-#[derive(Clone, Debug, PartialEq, Serialize, JsonSchema)]
+#[derive(Clone, Debug, PartialEq)]
 pub struct LimitState {
-    /// The quantity, in the symbols of the structure.
-    pub quantity: String,
-    /// What it is, in words.
-    pub meaning: String,
+    /// The limit.
+    pub limit: InstalledLimit,
     /// What is there, in SI units.
     pub value: f64,
-    /// `>=` or `<=`.
-    pub sign: String,
     /// The bound, in SI units.
     pub bound: f64,
-    /// The SI unit of both.
+    /// How far the value is on the right side; negative on the wrong one.
+    pub margin: f64,
+    /// The SI unit of all three.
     pub unit: String,
     /// It is kept.
     pub kept: bool,
-    /// Who set it.
-    pub standard: String,
-    /// How well it is known, in words.
-    pub confidence: String,
-    /// It is quoted from memory.
-    pub from_memory: bool,
+    /// Indicated heads of the station's range at which it is not kept, from and to, m; `None` where no
+    /// range is stated, or where it does not go by the head.
+    pub fails_at: Option<Vec<[f64; 2]>>,
 }
 
-/// The limits of a regime at given values of the inputs.
-pub(super) fn limit_states(model: &mut Model, regime: &Regime, inputs: &[f64]) -> Vec<LimitState> {
-    regime
-        .limits
+/// The limits of a form at given values of the inputs; those that do not apply there are left out.
+pub(super) fn limit_states(model: &mut Model, form: &Form, inputs: &[f64]) -> Vec<LimitState> {
+    form.limits
         .iter()
         .filter_map(|limit| {
             // A limit of the catalogue always reads; a test holds it so.
-            let (quantity, dimension) = model.expression(limit.quantity).ok()?;
-            let (values, _) = model.evaluate(&[quantity], inputs);
-            Some(LimitState {
-                quantity: limit.quantity.to_owned(),
-                meaning: limit.meaning.to_owned(),
-                value: values[0],
-                sign: limit.bound.sign().to_owned(),
-                bound: limit.bound.value(),
+            let (quantity, dimension) = model.expression(&limit.quantity).ok()?;
+            let (bound, _) = model.expression(&limit.bound).ok()?;
+            let applies = match &limit.applies {
+                Some(text) => model.expression(text).ok()?.0,
+                None => quantity,
+            };
+            let (values, _) = model.evaluate(&[quantity, bound, applies], inputs);
+            let [value, bound, applies] = [values[0], values[1], values[2]];
+            let stands = limit.applies.is_none() || applies > 0.0;
+            stands.then(|| LimitState {
+                limit: limit.clone(),
+                value,
+                bound,
+                margin: limit.side.margin(value, bound),
                 unit: dimension.to_string(),
-                kept: limit.bound.allows(values[0]),
-                standard: limit.source.document.to_owned(),
-                confidence: limit.confidence.words().to_owned(),
-                from_memory: limit.confidence.is_memory(),
+                kept: limit.side.allows(value, bound),
+                fails_at: None,
             })
         })
         .collect()
 }
 
-/// A warning for each limit that is not kept.
-pub(super) fn limit_warnings(states: &[LimitState]) -> Vec<Warning> {
+/// The station's own limits at a head: the largest that it can take, and the place of its gauge.
+pub(super) fn station_limits(station: &Station, moment: Moment) -> Vec<LimitState> {
+    let Some(stated) = &station.head else { return Vec::new() };
+    let own = |quantity: &str, side, meaning: &str| InstalledLimit {
+        kind: LimitKind::Station,
+        quantity: quantity.to_owned(),
+        side,
+        bound: String::new(),
+        applies: None,
+        meaning: meaning.to_owned(),
+        source: crate::model::source::STATION_FILE,
+        confidence: Confidence::Seen,
+    };
+    let state = |limit: InstalledLimit, value: f64, bound: f64| LimitState {
+        margin: limit.side.margin(value, bound),
+        kept: limit.side.allows(value, bound),
+        limit,
+        value,
+        bound,
+        unit: "m".to_owned(),
+        fails_at: None,
+    };
+    let mut states = Vec::new();
+    if let (Some(maximum), Some(head)) = (&stated.maximum, moment.head) {
+        let limit = own("head", Side::AtMost, "largest head that the structure can take");
+        states.push(state(limit, head, maximum.value));
+    }
+    let largest = stated.largest().map(|largest| largest.value);
+    if let (Some(distance), Some(largest)) = (&stated.gauge_distance, largest)
+        && let Ok(mut setting) = station.at(Moment { head: Some(largest), ..moment })
+        && let Some(form) = &setting.form
+    {
+        let position = form.structure.head_measured;
+        let corrected = setting.problem.corrected();
+        let model = &mut setting.problem.model;
+        for (text, side, meaning) in [
+            (position.nearest, Side::AtLeast, "distance of the gauge, at the largest head"),
+            (position.farthest, Side::AtMost, "distance of the gauge, at the largest head"),
+        ] {
+            let Some((id, _)) = text.and_then(|text| model.expression(text).ok()) else { continue };
+            let bound = model.evaluate(&[id], &corrected).0[0];
+            let (source, confidence) = (position.source, position.confidence);
+            let limit =
+                InstalledLimit { source, confidence, ..own("gauge_distance", side, meaning) };
+            states.push(state(limit, distance.value, bound));
+        }
+    }
     states
-        .iter()
-        .filter(|state| !state.kept)
-        .map(|state| {
-            let unit = if state.unit == "1" { String::new() } else { format!(" {}", state.unit) };
-            let side = if state.sign == "<=" { "above" } else { "below" };
-            let text = format!(
-                "{} ({}) is {}{unit}, {side} the limit of {}{unit} in {} ({})",
-                state.quantity,
-                state.meaning,
-                significant(state.value, 4),
-                significant(state.bound, 4),
-                state.standard,
-                state.confidence
-            );
-            Warning::new(Code::OutsideLimits, text)
-        })
-        .collect()
+}
+
+/// A warning for each limit that is not kept.
+pub(super) fn limit_warnings(states: &[LimitState], form: Option<&Form>) -> Vec<Warning> {
+    states.iter().filter(|state| !state.kept).map(|state| warning(state, form)).collect()
+}
+
+fn warning(state: &LimitState, form: Option<&Form>) -> Warning {
+    let limit = &state.limit;
+    let unit = if state.unit == "1" { String::new() } else { format!(" {}", state.unit) };
+    let side = match limit.side {
+        Side::AtMost => "above",
+        Side::AtLeast => "below",
+    };
+    let numbers = format!(
+        "{} ({}) is {}{unit}, {side} the limit of {}{unit}",
+        limit.quantity,
+        limit.meaning,
+        significant(state.value, 4),
+        significant(state.bound, 4),
+    );
+    let by = format!("in {} ({})", limit.source.document, limit.confidence.words());
+    let drowned = form.is_some_and(|form| form.uses_drowned_flow());
+    let (code, text) = match limit.kind {
+        LimitKind::Use => (Code::OutsideLimits, format!("{numbers} {by}")),
+        LimitKind::Modular if drowned => (
+            Code::DrownedFlow,
+            format!("{numbers} {by}: the equation for drowned flow is used"),
+        ),
+        LimitKind::Modular => (
+            Code::NotModular,
+            format!(
+                "{numbers} {by}: no equation for drowned flow is in force, and less water passes than is \
+                 stated here"
+            ),
+        ),
+        LimitKind::Critical => (
+            Code::NotCritical,
+            format!("{numbers} by specific energy: the tailwater rules the flow, not the control"),
+        ),
+        LimitKind::Station if limit.quantity == "head" => (Code::AboveMaximum, numbers),
+        LimitKind::Station => (Code::GaugeMisplaced, format!("{numbers} {by}")),
+    };
+    Warning::new(code, text)
 }

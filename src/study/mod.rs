@@ -3,7 +3,9 @@
 mod at;
 mod budget;
 mod check;
+mod hydraulics;
 mod limits;
+mod range;
 mod sheet;
 mod warnings;
 
@@ -11,6 +13,9 @@ pub use at::At;
 pub use budget::{
     Budget, BudgetRow, Correction, InputRow, MonteCarloPart, Question, ResultPart, budget,
 };
-pub use check::{Check, CheckedEnd, check};
+pub use check::{Check, CheckedEnd, FailingLimit, check};
+pub use hydraulics::{FlowState, Hydraulics};
 pub use limits::LimitState;
-pub use sheet::{DerivativeLine, EquationLine, NumberLine, RegimeSheet, Sheet, TableSheet, sheet};
+pub use sheet::{
+    DerivativeLine, DrownedSheet, EquationLine, NumberLine, RegimeSheet, Sheet, TableSheet, sheet,
+};

@@ -2,8 +2,11 @@
 
 use serde::Serialize;
 
-use crate::model::structures::{InputSpec, Regime, Structure};
+use crate::model::structures::{
+    Choice, Form, InstalledInput, Installation, SecondHead, Structure,
+};
 use crate::model::{Confidence, Model};
+use crate::units::{significant, with_unit};
 
 /// All that is known of a structure.
 #[derive(Clone, Debug, Serialize)]
@@ -18,6 +21,10 @@ pub struct Sheet {
     pub inputs: Vec<[String; 4]>,
     /// The forms of its equation.
     pub regimes: Vec<RegimeSheet>,
+    /// Equations for drowned flow.
+    pub drowned: Vec<DrownedSheet>,
+    /// What is checked besides the limits of use.
+    pub checks: Vec<NumberLine>,
     /// Published constants and uncertainties.
     pub numbers: Vec<NumberLine>,
     /// Published tables.
@@ -39,8 +46,23 @@ pub struct RegimeSheet {
     pub derivatives: Vec<DerivativeLine>,
     /// Limits of use.
     pub limits: Vec<NumberLine>,
-    /// The published uncertainty of the coefficient.
-    pub coefficient: NumberLine,
+    /// The published uncertainty of the coefficient, or why there is none.
+    pub coefficient: Vec<NumberLine>,
+}
+
+/// An equation for drowned flow.
+#[derive(Clone, Debug, Serialize)]
+pub struct DrownedSheet {
+    /// The word that chooses it.
+    pub name: String,
+    /// When it holds.
+    pub when: String,
+    /// Its definitions; `f` is the factor on the modular discharge.
+    pub equations: Vec<EquationLine>,
+    /// Who published it.
+    pub source: String,
+    /// How well it is known, in words.
+    pub confidence: String,
 }
 
 /// A definition.
@@ -81,10 +103,10 @@ pub struct TableSheet {
     pub what: String,
     /// The first argument with its unit; the second, if there is one.
     pub arguments: Vec<String>,
-    /// Nodes of the second argument, if there is one.
-    pub columns: Vec<f64>,
-    /// A node of the first argument, and the values there.
-    pub rows: Vec<(f64, Vec<f64>)>,
+    /// Nodes of the second argument, if there is one; the constants of a choice.
+    pub columns: Vec<String>,
+    /// A node of the first argument, or a word, and the values there; null where none is published.
+    pub rows: Vec<(String, Vec<Option<f64>>)>,
     /// Unit of the values.
     pub unit: String,
     /// Who published it.
@@ -95,35 +117,108 @@ pub struct TableSheet {
 
 /// The sheet of a structure of the catalogue.
 pub fn sheet(structure: &'static Structure) -> Sheet {
-    let inputs = structure.all_inputs();
-    let regimes = structure
-        .regimes
-        .iter()
-        .enumerate()
-        .filter_map(|(index, regime)| {
-            // The catalogue builds; a test holds it so.
-            let model = Model::build(&structure.blueprint(index)).ok()?;
-            Some(regime_sheet(regime, model))
-        })
-        .collect();
+    let installation = Installation::plain(structure);
+    // The catalogue builds; a test holds it so.
+    let built = |form: Form| Some((Model::build(&form.blueprint).ok()?, form));
+    let regimes = installation.forms().into_iter().filter_map(built);
     Sheet {
         kind: structure.kind.to_owned(),
         title: structure.title.to_owned(),
         standard: format!("{}, {}", structure.standard.document, structure.standard.title),
-        inputs: inputs.iter().map(input_line).collect(),
-        regimes,
+        inputs: inputs(&installation),
+        regimes: regimes.map(|(model, form)| regime_sheet(&form, model)).collect(),
+        drowned: drowned(&installation),
+        checks: checks(&installation),
         numbers: numbers(structure),
-        tables: structure.tables.iter().map(table_sheet).collect(),
+        tables: structure.tables.iter().map(table_sheet).chain(structure.choice.map(choice_sheet)).collect(),
         velocity_of_approach: structure.velocity_of_approach.to_owned(),
     }
 }
 
-fn input_line(input: &InputSpec) -> [String; 4] {
-    let mut meaning = input.meaning.to_owned();
-    if let Some(default) = input.default.filter(|default| !default.is_nan()) {
+fn inputs(installation: &Installation) -> Vec<[String; 4]> {
+    let choice = installation.structure.choice.map(|choice| {
+        let words: Vec<&str> = choice.options.iter().map(|(word, _)| *word).collect();
+        let meaning = format!("{}: {}", choice.meaning, words.join(", "));
+        [choice.key.to_owned(), "-".to_owned(), "-".to_owned(), meaning]
+    });
+    choice.into_iter().chain(installation.inputs().iter().map(input_line)).collect()
+}
+
+fn input_line(input: &InstalledInput) -> [String; 4] {
+    let mut meaning = input.spec.meaning.to_owned();
+    if let Some(default) = input.spec.default_value() {
         meaning = format!("{meaning} (default {default})");
     }
-    [input.key.to_owned(), input.symbol.to_owned(), input.dimension.to_string(), meaning]
+    [input.key.clone(), input.symbol.clone(), input.spec.dimension.to_string(), meaning]
+}
+
+/// The equations for drowned flow.
+fn drowned(installation: &Installation) -> Vec<DrownedSheet> {
+    installation
+        .structure
+        .drowned
+        .iter()
+        .map(|each| DrownedSheet {
+            name: each.name.to_owned(),
+            when: each.when.to_owned(),
+            equations: each
+                .definitions
+                .iter()
+                .map(|(name, text)| EquationLine { name: (*name).to_owned(), text: (*text).to_owned() })
+                .collect(),
+            source: each.source.document.to_owned(),
+            confidence: each.confidence.words().to_owned(),
+        })
+        .collect()
+}
+
+/// What is checked besides the limits of use: modular flow, critical flow, the place of the gauge.
+fn checks(installation: &Installation) -> Vec<NumberLine> {
+    let structure = installation.structure;
+    let modular = structure.modular;
+    let mut with_tailwater = installation.clone();
+    let drowned = installation.drowned().first().copied();
+    with_tailwater.second_head = Some(SecondHead { drowned, modular_limit: Some(0.5), rating: None });
+    let form = with_tailwater.forms().swap_remove(0);
+    let critical = form
+        .limits
+        .iter()
+        .filter(|limit| limit.kind == crate::model::structures::LimitKind::Critical)
+        .map(|limit| {
+            let bound = format!("{} {} {}", limit.quantity, limit.side.sign(), limit.bound);
+            line(limit.meaning.clone(), bound, limit.source.document, limit.confidence)
+        });
+    let definitions = form.blueprint.definitions.iter();
+    let energies = definitions
+        .filter(|(name, _)| ["y_2", "E_2", "E_c"].contains(&name.as_str()))
+        .map(|(name, text)| {
+            let source = crate::model::source::SPECIFIC_ENERGY;
+            line(energy_meaning(name), format!("{name} = {text}"), source.document, Confidence::Seen)
+        });
+    let position = structure.head_measured;
+    let gauge = [(position.nearest, ">="), (position.farthest, "<=")].into_iter().filter_map(
+        |(text, sign)| {
+            let value = format!("gauge_distance {sign} {}, h the largest", text?);
+            let what = "place of the gauge, [head] gauge_distance";
+            Some(line(what, value, position.source.document, position.confidence))
+        },
+    );
+    let ratio = modular.ratio.map_or_else(String::new, |ratio| format!(", M_L = {ratio}"));
+    let highest = if installation.sections.is_empty() {
+        format!("h_2 <= {}{ratio}", modular.highest)
+    } else {
+        modular.words.to_owned()
+    };
+    let first = line("modular flow, with [tailwater]", highest, modular.source.document, modular.confidence);
+    std::iter::once(first).chain(critical).chain(energies).chain(gauge).collect()
+}
+
+fn energy_meaning(name: &str) -> &'static str {
+    match name {
+        "y_2" => "depth of the undisturbed flow above the approach bed",
+        "E_2" => "its specific energy",
+        _ => "least energy above the sill that the control takes",
+    }
 }
 
 fn line(
@@ -140,7 +235,7 @@ fn line(
     }
 }
 
-fn regime_sheet(regime: &Regime, mut model: Model) -> RegimeSheet {
+fn regime_sheet(form: &Form, mut model: Model) -> RegimeSheet {
     let mut equations: Vec<EquationLine> = model
         .definitions()
         .iter()
@@ -159,34 +254,33 @@ fn regime_sheet(regime: &Regime, mut model: Model) -> RegimeSheet {
         });
         equations.push(EquationLine { name: "F".to_owned(), text: model.text(unknown.residual) });
     }
-    let limits = regime
+    let limits = form
         .limits
         .iter()
         .map(|limit| {
             let unit = model
-                .expression(limit.quantity)
-                .map(|(_, dimension)| dimension.to_string())
-                .ok()
-                .filter(|unit| unit != "1")
-                .map_or_else(String::new, |unit| format!(" {unit}"));
-            let bound =
-                format!("{} {} {}{unit}", limit.quantity, limit.bound.sign(), limit.bound.value());
-            line(limit.meaning, bound, limit.source.document, limit.confidence)
+                .expression(&limit.quantity)
+                .map_or_else(|_| "1".to_owned(), |(_, dimension)| dimension.to_string());
+            // A bound in symbols has its unit from them.
+            let unit = if limit.bound.parse::<f64>().is_ok() { unit.as_str() } else { "1" };
+            let bound = format!("{} {} {}", limit.quantity, limit.side.sign(), with_unit(&*limit.bound, unit));
+            line(limit.meaning.clone(), bound, limit.source.document, limit.confidence)
         })
         .collect();
-    let rule = regime.coefficient;
+    let rules = form.automatic.iter().filter(|source| source.is_coefficient).map(|source| {
+        let (by, confidence) = source.published;
+        line(source.name.clone(), source.words.clone(), by.document, confidence)
+    });
+    let unstated = form.unstated.iter().map(|(keys, why)| {
+        line(keys.join(", "), why.clone(), form.structure.standard.document, Confidence::Doubtful)
+    });
     RegimeSheet {
-        name: regime.name.to_owned(),
-        when: regime.when.to_owned(),
+        name: form.regime.clone(),
+        when: form.when.clone(),
         equations,
         derivatives: derivatives(&mut model),
         limits,
-        coefficient: line(
-            "published coefficient",
-            rule.words,
-            rule.source.document,
-            rule.confidence,
-        ),
+        coefficient: rules.chain(unstated).collect(),
     }
 }
 
@@ -236,11 +330,9 @@ fn derivatives(model: &mut Model) -> Vec<DerivativeLine> {
 
 fn numbers(structure: &'static Structure) -> Vec<NumberLine> {
     let constants = structure.constants.iter().map(|each| {
-        let unit = each.dimension.to_string();
-        let unit = if unit == "1" { String::new() } else { format!(" {unit}") };
         line(
             format!("{} ({})", each.meaning, each.symbol),
-            format!("{}{unit}", each.value),
+            with_unit(each.value.to_string(), &each.dimension.to_string()),
             each.source.document,
             each.confidence,
         )
@@ -249,15 +341,19 @@ fn numbers(structure: &'static Structure) -> Vec<NumberLine> {
         .adjustments
         .iter()
         .map(|each| line(each.name, each.words, each.source.document, each.confidence));
-    let statements = [("head measured", &structure.head_measured), ("modular", &structure.modular)]
-        .into_iter()
-        .map(|(what, each)| line(what, each.text, each.source.document, each.confidence));
+    let (modular, position) = (structure.modular, structure.head_measured);
+    let statements = [
+        line("head measured", position.words, position.source.document, position.confidence),
+        line("modular", modular.words, modular.source.document, modular.confidence),
+    ];
     constants.chain(adjustments).chain(statements).collect()
 }
 
 fn table_sheet(table: &crate::model::structures::PublishedTable) -> TableSheet {
     let (first, first_unit, nodes) = table.first;
-    let columns = table.second.map_or_else(Vec::new, |(_, _, nodes)| nodes.to_vec());
+    let number = |node: &f64| significant(*node, 4);
+    let columns: Vec<String> =
+        table.second.map_or_else(Vec::new, |(_, _, nodes)| nodes.iter().map(number).collect());
     let width = columns.len().max(1);
     let named = |name: &str, unit: &str| format!("{name} [{unit}]");
     TableSheet {
@@ -268,11 +364,33 @@ fn table_sheet(table: &crate::model::structures::PublishedTable) -> TableSheet {
         rows: nodes
             .iter()
             .zip(table.values.chunks(width))
-            .map(|(node, values)| (*node, values.to_vec()))
+            .map(|(node, values)| (number(node), values.iter().copied().map(Some).collect()))
             .collect(),
         columns,
         unit: table.unit.to_owned(),
         source: table.source.document.to_owned(),
         confidence: table.confidence.words().to_owned(),
+    }
+}
+
+/// The sets of constants that a word picks, as a table with a row for each word.
+fn choice_sheet(choice: Choice) -> TableSheet {
+    let symbols: Vec<String> =
+        choice.symbols.iter().map(|(symbol, meaning)| format!("{symbol} {meaning}")).collect();
+    TableSheet {
+        what: format!("{}: {}; columns: {}", choice.key, choice.meaning, symbols.join("; ")),
+        arguments: vec![choice.key.to_owned()],
+        columns: choice.symbols.iter().map(|(symbol, _)| (*symbol).to_owned()).collect(),
+        rows: choice
+            .options
+            .iter()
+            .map(|(word, values)| {
+                let known = |value: &f64| Some(*value).filter(|value| !value.is_nan());
+                ((*word).to_owned(), values.iter().map(known).collect())
+            })
+            .collect(),
+        unit: "m and m3/s".to_owned(),
+        source: choice.source.document.to_owned(),
+        confidence: choice.confidence.words().to_owned(),
     }
 }

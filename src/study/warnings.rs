@@ -2,9 +2,8 @@
 
 use super::limits::LimitState;
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{Regime, Structure};
 use crate::propagation::monte_carlo::MonteCarlo;
-use crate::propagation::{DegreesOfFreedom, Linear};
+use crate::propagation::{DegreesOfFreedom, Linear, linear};
 use crate::station::Setting;
 use crate::units::significant;
 
@@ -33,6 +32,13 @@ pub(super) fn trial_warnings(result: &MonteCarlo) -> Vec<Warning> {
         );
         warnings.push(Warning::new(Code::TrialsUndefined, text));
     }
+    if result.tally.across > 0 {
+        let text = format!(
+            "{} another branch of the equation holds than at the values asked about",
+            share(result.tally.across)
+        );
+        warnings.push(Warning::new(Code::TrialsAcrossBranch, text));
+    }
     if !result.settled {
         let text = format!(
             "after {} trials the figures have not settled to two digits; take the interval with care",
@@ -51,6 +57,33 @@ pub(super) fn freedom_warning(linear: &Linear) -> Option<Warning> {
              (JCGM 101 5.7.2): the coverage factor is that of a normal distribution",
         )
     })
+}
+
+/// Standard uncertainties within which a branch of the equation is near.
+const NEAR: f64 = 3.0;
+
+/// Branches of the equation that begin so near that its slope here does not tell how it goes on.
+pub(super) fn branch_warnings(setting: &Setting) -> Vec<Warning> {
+    let mut problem = setting.problem.clone();
+    let branches = problem.model.branches();
+    problem.outputs = branches.iter().map(|branch| problem.model.distance(*branch)).collect();
+    let distances = linear(&mut problem);
+    let near = branches.iter().zip(&distances).filter(|(_, distance)| {
+        let u = distance.standard_uncertainty;
+        u > 0.0 && distance.value.abs() <= NEAR * u
+    });
+    near.map(|(branch, distance)| {
+        let model = &problem.model;
+        let text = format!(
+            "the equation branches at {} = {}, {} standard uncertainties from here, and the linear method \
+             follows one branch only",
+            model.text(branch.left),
+            model.text(branch.right),
+            significant(distance.value.abs() / distance.standard_uncertainty, 2)
+        );
+        Warning::new(Code::NearBranch, text)
+    })
+    .collect()
 }
 
 /// Whether the corrected values lie at a node of a published table, or outside one.
@@ -88,14 +121,15 @@ pub(super) fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Wa
 
 /// Which published numbers behind the result are quoted from memory.
 pub(super) fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option<Warning> {
-    let (structure, regime) = setting.regime?;
-    let mut from_memory: Vec<String> = memory_numbers(structure, regime);
+    let form = setting.form.as_ref()?;
+    let numbers = form.numbers.iter().filter(|(_, confidence)| confidence.is_memory());
+    let mut from_memory: Vec<String> = numbers.map(|(what, _)| what.clone()).collect();
     for (source, row) in setting.problem.sources.iter().zip(&setting.rows) {
         if row.published.is_some_and(|(_, confidence)| confidence.is_memory()) {
             from_memory.push(format!("the uncertainty of `{}`", source.name));
         }
     }
-    if limits.iter().any(|limit| limit.from_memory) {
+    if limits.iter().any(|state| state.limit.confidence.is_memory()) {
         from_memory.push("limits of use".to_owned());
     }
     (!from_memory.is_empty()).then(|| {
@@ -103,30 +137,9 @@ pub(super) fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option
             Code::FromMemory,
             format!(
                 "quoted from memory, confirm against your copy of {}: {}",
-                structure.standard.document,
+                form.structure.standard.document,
                 from_memory.join(", ")
             ),
         )
     })
-}
-
-/// Constants and tables that the equation of a regime uses and that are quoted from memory.
-fn memory_numbers(structure: &Structure, regime: &Regime) -> Vec<String> {
-    let uses = |name: &str| {
-        let words = regime.definitions.iter().flat_map(|(_, text)| {
-            text.split(|c: char| !(c.is_alphanumeric() || c == '_')).collect::<Vec<_>>()
-        });
-        words.into_iter().any(|word| word == name)
-    };
-    let constants = structure
-        .constants
-        .iter()
-        .filter(|each| each.confidence.is_memory() && uses(each.symbol))
-        .map(|each| each.meaning.to_owned());
-    let tables = structure
-        .tables
-        .iter()
-        .filter(|each| each.confidence.is_memory() && uses(each.name))
-        .map(|each| format!("table {}", each.name));
-    constants.chain(tables).collect()
 }

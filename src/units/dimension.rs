@@ -37,6 +37,16 @@ impl Dimension {
     pub const ANGLE: Self = Self::of(0, 0, 0, 0, 1);
     /// Acceleration.
     pub const ACCELERATION: Self = Self::of(1, 0, -2, 0, 0);
+    /// What a coefficient of `b h^1.5` has that gravity is part of.
+    pub const ROOT_LENGTH_PER_TIME: Self = Self {
+        exponents: [
+            Rational::HALF,
+            Rational::whole(0),
+            Rational::whole(-1),
+            Rational::whole(0),
+            Rational::whole(0),
+        ],
+    };
     /// Volume per time.
     pub const DISCHARGE: Self = Self::of(3, 0, -1, 0, 0);
     /// Pressure.

@@ -13,5 +13,5 @@ pub use dimension::Dimension;
 pub(crate) use quantity::is_plausible;
 pub use quantity::{Quantity, QuantityError, QuantityProblem, parse_number};
 pub use rational::Rational;
-pub use significant::significant;
+pub use significant::{significant, with_unit};
 pub use unit::{Unit, UnitError};

@@ -31,3 +31,20 @@ pub fn significant(value: f64, digits: i32) -> String {
         rounded
     }
 }
+
+/// A number with its unit; that of a pure number, `1`, is not written.
+///
+/// ```
+/// use nappe::units::with_unit;
+///
+/// assert_eq!(with_unit("0.25", "m"), "0.25 m");
+/// assert_eq!(with_unit("1.2", "1"), "1.2");
+/// ```
+pub fn with_unit(number: impl Into<String>, unit: &str) -> String {
+    let mut text = number.into();
+    if unit != "1" {
+        text.push(' ');
+        text.push_str(unit);
+    }
+    text
+}

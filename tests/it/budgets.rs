@@ -26,6 +26,7 @@ fn reference(name: &str, trials: Option<Amount>) -> (Budget, Value) {
         coverage: Coverage::Probability(0.95),
         trials,
         seed: 7,
+        tailwater: None,
         month: None,
     };
     (budget(&station.unwrap(), &question, &|_| {}).unwrap(), expected)

@@ -15,6 +15,7 @@ fn answer(station: &Station) -> String {
         coverage: Coverage::Probability(0.95),
         trials: Some(Amount::Fixed(20_000)),
         seed: 1,
+        tailwater: None,
         month: Some(7),
     };
     let found = budget(station, &question, &|_| {}).expect("an example has an answer");

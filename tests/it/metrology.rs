@@ -14,6 +14,7 @@ pub(crate) fn solve(text: &str, trials: u64) -> Budget {
         coverage: Coverage::Probability(0.95),
         trials: (trials > 0).then_some(Amount::Fixed(trials)),
         seed: 3,
+        tailwater: None,
         month: None,
     };
     budget(&station.expect("a station"), &question, &|_| {}).expect("a budget")

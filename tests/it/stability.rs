@@ -15,6 +15,7 @@ fn json(file: &str, trials: Amount, threads: usize) -> String {
         coverage: Coverage::Probability(0.95),
         trials: Some(trials),
         seed: 11,
+        tailwater: None,
         month: None,
     };
     let pool = rayon::ThreadPoolBuilder::new().num_threads(threads).build().unwrap();

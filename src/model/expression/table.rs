@@ -90,6 +90,12 @@ impl Table {
         .filter(|_| complete)
     }
 
+    /// The same table under another name.
+    #[must_use]
+    pub fn renamed(self, name: String) -> Self {
+        Self { name, ..self }
+    }
+
     /// What equations call it.
     pub fn name(&self) -> &str {
         &self.name

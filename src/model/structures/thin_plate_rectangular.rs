@@ -1,8 +1,10 @@
 //! Rectangular thin-plate weir, Kindsvater-Carter equation, all ratios of crest to approach width.
 
+use super::approach::{APPROACH_SIDE_SLOPE, MEAN_WIDTH};
+use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT, WIDTH_ADJUSTMENT};
 use super::{
-    Adjustment, CoefficientRule, Constant, HEAD_ADJUSTMENT, InputSpec, PUBLISHED_HEAD_ADJUSTMENT,
-    PublishedTable, Regime, Statement, Structure, Values, WIDTH_ADJUSTMENT,
+    Adjustment, Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec,
+    ModularLimit, PublishedTable, Regime, Structure, Values,
 };
 use crate::model::source::{FENTON, ISO_1438, KINDSVATER_CARTER};
 use crate::model::{Confidence, Limit};
@@ -17,20 +19,20 @@ pub(super) static STRUCTURE: Structure = Structure {
     standard: ISO_1438,
     inputs: &[
         InputSpec::length("crest_width", "b", "width of the crest", "0.60 m"),
-        InputSpec {
-            // Left out, or equal to the crest width, it means a weir over the full width.
-            default: Some(f64::NAN),
-            ..InputSpec::length(
-                "approach_width",
-                "B",
-                "width of the approach channel; left out or equal to the crest width: full width",
-                "1.20 m",
-            )
-        },
+        // Left out, or equal to the crest width, it means a weir over the full width.
+        InputSpec::length(
+            "approach_width",
+            "B",
+            "width of the approach channel; left out or equal to the crest width: full width",
+            "1.20 m",
+        )
+        .optional(),
         InputSpec::length("crest_height", "p", "height of the crest above the bed", "0.45 m"),
+        APPROACH_SIDE_SLOPE,
         HEAD_ADJUSTMENT,
         WIDTH_ADJUSTMENT,
     ],
+    choice: None,
     constants: &[
         Constant {
             symbol: "k_h_published",
@@ -86,23 +88,25 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "contracted",
             when: "the crest is narrower than the approach channel",
             definitions: &[
-                ("r_b", "b/B"),
+                MEAN_WIDTH,
+                ("r_b", "b/B_m"),
                 ("C_e", "a(r_b) + c(r_b)*h/p"),
                 ("k_h", "k_h_published + dk_h"),
                 ("k_b", "k_chart(r_b) + dk_b"),
                 ("b_e", "b + k_b"),
                 ("h_e", "h + k_h"),
-                ("Q", "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5"),
             ],
-            unknown: None,
+            discharge: "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5",
+            implicit: Implicit::Nothing,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
+            borders: &[],
             limits: &[
                 MIN_HEAD,
                 MIN_WIDTH,
                 MIN_HEIGHT,
                 MAX_RATIO,
-                Limit::at_least("(B - b)/2", 0.10, "side contraction on each side")
+                Limit::at_least("(B_m - b)/2", "0.10", "side contraction on each side")
                     .by(ISO_1438, Confidence::Memory),
             ],
             coefficient: COEFFICIENT,
@@ -117,16 +121,17 @@ pub(super) static STRUCTURE: Structure = Structure {
                 ("k_b", "k_b_full + dk_b"),
                 ("b_e", "b + k_b"),
                 ("h_e", "h + k_h"),
-                ("Q", "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5"),
             ],
-            unknown: None,
+            discharge: "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5",
+            implicit: Implicit::Nothing,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
+            borders: &[],
             limits: &[MIN_HEAD, MIN_WIDTH, MIN_HEIGHT, MAX_RATIO],
             coefficient: COEFFICIENT,
         },
     ],
-    regime_for: |values: &Values<'_>| match values.given("approach_width") {
+    regime_for: |values: &Values| match values.given("approach_width") {
         None => 1,
         Some(approach) => usize::from(approach == values.value("crest_width")),
     },
@@ -142,42 +147,49 @@ pub(super) static STRUCTURE: Structure = Structure {
             confidence: Confidence::Memory,
         },
     ],
-    velocity_of_approach: "inside the coefficient, through h/p and b/B: the gauged head is used",
-    modular: Statement {
-        text: "free, ventilated nappe: tailwater at least about 0.1 m below the crest",
+    critical: None,
+    velocity_of_approach: "inside the coefficient, through h/p and b/B: the gauged head is used; in an \
+                           approach with sloping sides B is area over depth at each head",
+    drowned: &[],
+    modular: ModularLimit {
+        words: "free, ventilated nappe: tailwater at least about 0.1 m below the crest",
+        ratio: None,
+        highest: "-0.1",
         source: ISO_1438,
         confidence: Confidence::Memory,
     },
-    head_measured: Statement {
-        text: "4 to 5 times the largest head upstream of the plate",
+    head_measured: HeadPosition {
+        words: "4 to 5 times the largest head upstream of the plate",
+        nearest: Some("4*h"),
+        farthest: Some("5*h"),
         source: ISO_1438,
         confidence: Confidence::Memory,
     },
 };
 
-const MIN_HEAD: Limit = Limit::at_least("h", 0.03, "head").by(ISO_1438, Confidence::Memory);
-const MIN_WIDTH: Limit = Limit::at_least("b", 0.15, "crest width").by(ISO_1438, Confidence::Memory);
+const MIN_HEAD: Limit = Limit::at_least("h", "0.03", "head").by(ISO_1438, Confidence::Memory);
+const MIN_WIDTH: Limit = Limit::at_least("b", "0.15", "crest width").by(ISO_1438, Confidence::Memory);
 const MIN_HEIGHT: Limit =
-    Limit::at_least("p", 0.10, "crest height").by(ISO_1438, Confidence::Memory);
+    Limit::at_least("p", "0.10", "crest height").by(ISO_1438, Confidence::Memory);
 const MAX_RATIO: Limit =
-    Limit::at_most("h/p", 2.5, "head over crest height").by(ISO_1438, Confidence::Memory);
+    Limit::at_most("h/p", "2.5", "head over crest height").by(ISO_1438, Confidence::Memory);
 
-const COEFFICIENT: CoefficientRule = CoefficientRule {
+const COEFFICIENT: Coefficient = Coefficient::Published(CoefficientRule {
     words: "at 95 %: 1.5 % for h/p up to 1.0, 2 % up to 1.5, 3 % up to 2.5",
     percent: "1.5 when h <= p otherwise 2 when h <= 1.5*p otherwise 3",
     source: ISO_1438,
     confidence: Confidence::Memory,
-};
+});
 
 #[cfg(test)]
 mod tests {
     use crate::model::Model;
-
-    use super::STRUCTURE;
+    use crate::model::structures::{CATALOGUE, Installation};
 
     #[test]
     fn the_derivative_by_head_reads_as_written_by_hand() {
-        let mut model = Model::build(&STRUCTURE.blueprint(1)).unwrap();
+        let form = Installation::plain(CATALOGUE[0]).forms().swap_remove(1);
+        let mut model = Model::build(&form.blueprint).unwrap();
         let by_gravity = model.derivative(model.result(), model.input("gravity").unwrap());
         assert_eq!(model.text(by_gravity), "2/3*F_C*C_e*b_e*h_e^1.5/sqrt(2*g)");
     }

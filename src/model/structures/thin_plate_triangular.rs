@@ -1,11 +1,12 @@
 //! Triangular thin-plate notch, Kindsvater-Shen equation, 20 to 100 degrees.
 
+use super::approach::{APPROACH_SIDE_SLOPE, APPROACH_WIDTH, MEAN_WIDTH};
+use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
 use super::{
-    CoefficientRule, HEAD_ADJUSTMENT, InputSpec, PUBLISHED_HEAD_ADJUSTMENT, PublishedTable, Regime,
-    Statement, Structure, Values,
+    Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec, ModularLimit,
+    PublishedTable, Regime, Structure, Values,
 };
 use crate::model::source::{ISO_1438, NBS_421, USBR_MANUAL};
-use crate::model::structures::Constant;
 use crate::model::{Confidence, Limit};
 use crate::units::Dimension;
 
@@ -33,9 +34,11 @@ pub(super) static STRUCTURE: Structure = Structure {
             example: "90 deg",
         },
         InputSpec::length("crest_height", "p", "height of the vertex above the bed", "0.45 m"),
-        InputSpec::length("approach_width", "B", "width of the approach channel", "1.20 m"),
+        APPROACH_WIDTH,
+        APPROACH_SIDE_SLOPE,
         HEAD_ADJUSTMENT,
     ],
+    choice: None,
     constants: &[Constant {
         symbol: "k_h_right",
         value: 0.00085,
@@ -97,23 +100,25 @@ pub(super) static STRUCTURE: Structure = Structure {
             when: "h/p <= 0.4, h/B <= 0.2, p >= 0.45 m and B >= 0.90 m; and for every \
                    other notch that is not within 1 degree of 90",
             definitions: &[
+                MEAN_WIDTH,
                 ("C_e", "C_chart(theta)"),
                 ("k_h", "k_chart(theta) + dk_h"),
                 ("h_e", "h + k_h"),
-                ("Q", "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5"),
             ],
-            unknown: None,
+            discharge: "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5",
+            implicit: Implicit::Nothing,
             flowing: "h + k_chart(theta) + dk_h",
             beyond: None,
+            borders: BORDERS,
             limits: &[
-                Limit::at_least("h", 0.06, "head").by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h", 0.38, "head").by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h/p", 0.4, "head over vertex height")
+                Limit::at_least("h", "0.06", "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h", "0.38", "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/p", "0.4", "head over vertex height")
                     .by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h/B", 0.2, "head over approach width")
+                Limit::at_most("h/B_m", "0.2", "head over approach width")
                     .by(ISO_1438, Confidence::Memory),
-                Limit::at_least("p", 0.45, "vertex height").by(ISO_1438, Confidence::Memory),
-                Limit::at_least("B", 0.90, "approach width").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("p", "0.45", "vertex height").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("B_m", "0.90", "approach width").by(ISO_1438, Confidence::Memory),
             ],
             coefficient: COEFFICIENT,
         },
@@ -121,26 +126,28 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "partially contracted",
             when: "a notch within 1 degree of 90 that is not fully contracted",
             definitions: &[
-                ("C_e", "C_partial(p/B, min(h/p, C_end(p/B)))"),
+                MEAN_WIDTH,
+                ("C_e", "C_partial(p/B_m, min(h/p, C_end(p/B_m)))"),
                 ("k_h", "k_h_right + dk_h"),
                 ("h_e", "h + k_h"),
-                ("Q", "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5"),
             ],
-            unknown: None,
+            discharge: "8/15*sqrt(2*g)*F_C*C_e*tan(theta/2)*h_e^2.5",
+            implicit: Implicit::Nothing,
             flowing: "h + k_h_right + dk_h",
-            beyond: Some("h/p - C_end(p/B)"),
+            beyond: Some("h/p - C_end(p/B_m)"),
+            borders: BORDERS,
             limits: &[
-                Limit::at_least("h", 0.05, "head").by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h", 0.60, "head").by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h/p", 1.2, "head over vertex height")
+                Limit::at_least("h", "0.05", "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h", "0.60", "head").by(ISO_1438, Confidence::Memory),
+                Limit::at_most("h/p", "1.2", "head over vertex height")
                     .by(ISO_1438, Confidence::Memory),
-                Limit::at_most("h/B", 0.4, "head over approach width")
+                Limit::at_most("h/B_m", "0.4", "head over approach width")
                     .by(ISO_1438, Confidence::Memory),
-                Limit::at_least("p", 0.10, "vertex height").by(ISO_1438, Confidence::Memory),
-                Limit::at_least("B", 0.60, "approach width").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("p", "0.10", "vertex height").by(ISO_1438, Confidence::Memory),
+                Limit::at_least("B_m", "0.60", "approach width").by(ISO_1438, Confidence::Memory),
                 Limit::at_most(
-                    "h/p/C_end(p/B)",
-                    1.0,
+                    "h/p/C_end(p/B_m)",
+                    "1.0",
                     "h/p over the end of the published curve for this p/B",
                 )
                 .by(NBS_421, Confidence::Seen),
@@ -150,14 +157,21 @@ pub(super) static STRUCTURE: Structure = Structure {
     ],
     regime_for,
     adjustments: &[PUBLISHED_HEAD_ADJUSTMENT],
-    velocity_of_approach: "inside the coefficient: the gauged head is used",
-    modular: Statement {
-        text: "tailwater at least 0.2 ft (0.061 m) below the vertex",
+    critical: None,
+    velocity_of_approach: "inside the coefficient: the gauged head is used; in an approach with sloping \
+                           sides B is area over depth at each head",
+    drowned: &[],
+    modular: ModularLimit {
+        ratio: None,
+        highest: "-0.061",
+        words: "tailwater at least 0.2 ft (0.061 m) below the vertex",
         source: USBR_MANUAL,
         confidence: Confidence::Seen,
     },
-    head_measured: Statement {
-        text: "4 to 5 times the largest head upstream of the plate",
+    head_measured: HeadPosition {
+        words: "4 to 5 times the largest head upstream of the plate",
+        nearest: Some("4*h"),
+        farthest: Some("5*h"),
         source: ISO_1438,
         confidence: Confidence::Memory,
     },
@@ -165,8 +179,9 @@ pub(super) static STRUCTURE: Structure = Structure {
 
 /// Contraction is a matter of the installation and of the head that the gauge shows: it is decided once,
 /// and no trial changes it.
-fn regime_for(values: &Values<'_>) -> usize {
-    let [h, p, width] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
+fn regime_for(values: &Values) -> usize {
+    let [h, p, bed] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
+    let width = bed + values.given("approach_side_slope").unwrap_or(0.0) * (h + p);
     let at_most = |value: f64, bound: f64| value <= bound * (1.0 + ROUNDING);
     let full =
         at_most(h / p, 0.4) && at_most(h / width, 0.2) && at_most(0.45, p) && at_most(0.90, width);
@@ -175,12 +190,15 @@ fn regime_for(values: &Values<'_>) -> usize {
     usize::from(!full && right)
 }
 
-const COEFFICIENT: CoefficientRule = CoefficientRule {
+/// Where contraction becomes full, or partial.
+const BORDERS: &[&str] = &["h/p - 0.4", "h/B_m - 0.2"];
+
+const COEFFICIENT: Coefficient = Coefficient::Published(CoefficientRule {
     words: "1.0 % at 95 % within the limits",
     percent: "1",
     source: ISO_1438,
     confidence: Confidence::Memory,
-};
+});
 
 /// Row by row of p/B; beyond the end of a curve its last printed value stands.
 #[rustfmt::skip] // a row of the published chart a line
@@ -198,10 +216,12 @@ const PARTIAL: &[f64] = &[
 mod tests {
     use super::*;
     use crate::model::Model;
+    use crate::model::structures::Installation;
 
     #[test]
     fn the_derivative_by_head_reads_as_a_person_would_write_it() {
-        let mut model = Model::build(&STRUCTURE.blueprint(0)).unwrap();
+        let form = Installation::plain(&STRUCTURE).forms().swap_remove(0);
+        let mut model = Model::build(&form.blueprint).unwrap();
         let derivative = model.derivative(model.result(), 0);
         assert_eq!(model.text(derivative), "4/3*F_C*C_e*sqrt(2*g)*tan(theta/2)*h_e^1.5");
     }
@@ -209,12 +229,15 @@ mod tests {
     #[test]
     fn contraction_follows_the_installation() {
         let regime = |h: f64, p: f64, width: f64, degrees: f64| {
-            regime_for(&Values(&[
-                ("head", Some(h)),
-                ("crest_height", Some(p)),
-                ("approach_width", Some(width)),
-                ("notch_angle", Some(degrees * DEGREE)),
-            ]))
+            regime_for(&Values::new(
+                [
+                    ("head", h),
+                    ("crest_height", p),
+                    ("approach_width", width),
+                    ("notch_angle", degrees * DEGREE),
+                ]
+                .map(|(key, value)| (key.to_owned(), Some(value))),
+            ))
         };
         assert_eq!(regime(0.18, 0.45, 1.2, 89.7), 0);
         assert_eq!(regime(0.19, 0.45, 1.2, 89.7), 1);

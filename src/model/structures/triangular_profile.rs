@@ -1,7 +1,12 @@
-//! Triangular profile weir, slopes 1:2 and 1:5, modular flow, total head with velocity of approach.
+//! Triangular profile weir 1:2/1:5, total head with velocity of approach; drowned flow by the tailwater
+//! or by a crest tapping.
 
+use super::approach::{
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT, froude_at_most,
+};
 use super::{
-    CoefficientRule, Constant, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Statement, Structure,
+    Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow, HeadPosition, Implicit,
+    InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
 };
 use crate::model::source::{ISO_4360, ISO_4360_2008};
 use crate::model::{Confidence, Limit};
@@ -9,20 +14,21 @@ use crate::units::Dimension;
 
 pub(super) static STRUCTURE: Structure = Structure {
     kind: "triangular-profile",
-    title: "Triangular profile weir, slopes 1:2 upstream and 1:5 downstream",
+    title: "Triangular profile weir, slopes 1:2 and 1:5",
     standard: ISO_4360,
     inputs: &[
-        InputSpec::length("crest_width", "b", "width of the crest", "3.00 m"),
-        InputSpec::length("crest_height", "p", "height of the crest above the bed", "0.50 m"),
-        InputSpec::length("approach_width", "B", "width of the approach channel", "3.00 m"),
+        InputSpec::length("crest_width", "b", "width of the crest", "2.00 m"),
+        InputSpec::length("crest_height", "p", "height of the crest above the bed", "0.40 m"),
+        InputSpec { example: "2.00 m", ..APPROACH_WIDTH },
         KINETIC_ENERGY_COEFFICIENT,
     ],
+    choice: None,
     constants: &[
         Constant {
             symbol: "C_published",
             value: 1.163,
             dimension: Dimension::NONE,
-            meaning: "coefficient on (2/3)^1.5 sqrt(g) b H^1.5; gives the well-known 0.633",
+            meaning: "coefficient; (2/3)^1.5 of it is the well-known 0.633",
             source: ISO_4360,
             confidence: Confidence::MemoryConfirmed,
         },
@@ -30,53 +36,109 @@ pub(super) static STRUCTURE: Structure = Structure {
             symbol: "k_h_published",
             value: 0.0003,
             dimension: Dimension::LENGTH,
-            meaning: "head taken up by surface tension and viscosity",
+            meaning: "head adjustment for surface tension and viscosity",
             source: ISO_4360,
             confidence: Confidence::MemoryConfirmed,
         },
     ],
     tables: &[],
     regimes: &[Regime {
-        name: "modular",
-        when: "always: the equation holds while the flow is modular",
+        name: "1:2/1:5",
+        when: "always",
         definitions: &[
             ("C_D", "C_published*(1 - k_h_published/h)^1.5"),
-            ("Q", "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5"),
-            ("A", "B*(h + p)"),
-            ("C_V", "(H/h)^1.5"),
+            ("Q_modular", "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5"),
+            RECTANGULAR,
+            TOTAL_HEAD,
+            VELOCITY_COEFFICIENT,
+            FROUDE,
         ],
-        // At the largest possible flow the velocity head is a third of the total head.
-        unknown: Some(["H", "H = h + alpha*Q^2/(2*g*A^2)", "h", "1.5*h"]),
+        discharge: "f*Q_modular",
+        implicit: Implicit::Discharge,
         flowing: "h - k_h_published",
         beyond: None,
+        borders: &[],
         limits: &[
-            Limit::at_least("h", 0.03, "head (smooth metal crest; 0.06 m for fine concrete)")
+            Limit::at_least("h", "0.03", "head (smooth metal crest; 0.06 m for fine concrete)")
                 .by(ISO_4360, Confidence::Memory),
-            Limit::at_least("p", 0.06, "crest height").by(ISO_4360, Confidence::Memory),
-            Limit::at_least("b", 0.30, "crest width").by(ISO_4360, Confidence::Memory),
-            Limit::at_most("h/p", 3.5, "head over crest height").by(ISO_4360, Confidence::Memory),
-            Limit::at_least("b/h", 2.0, "crest width over head").by(ISO_4360, Confidence::Memory),
-            Limit::at_most("Q/(A*sqrt(g*A/B))", 0.6, "Froude number of the approach")
-                .by(ISO_4360, Confidence::Doubtful),
+            Limit::at_least("p", "0.06", "crest height").by(ISO_4360, Confidence::Memory),
+            Limit::at_least("b", "0.30", "crest width").by(ISO_4360, Confidence::Memory),
+            Limit::at_most("h/p", "3.5", "head over crest height").by(ISO_4360, Confidence::Memory),
+            Limit::at_least("b/h", "2", "crest width over head").by(ISO_4360, Confidence::Memory),
+            froude_at_most("0.6").by(ISO_4360, Confidence::Doubtful),
         ],
-        coefficient: CoefficientRule {
+        coefficient: Coefficient::Published(CoefficientRule {
             words: "at 95 %: 10 C_V - 9 per cent (1 % at C_V = 1, 2 % at 1.1)",
             percent: "10*C_V - 9",
             source: ISO_4360,
             confidence: Confidence::Memory,
-        },
+        }),
     }],
     regime_for: |_| 0,
     adjustments: &[],
-    velocity_of_approach: "through the total head H, an unknown solved with the discharge",
-    modular: Statement {
-        text: "downstream total head not above 0.75 of the upstream one",
+    drowned: &[
+        DrownedFlow {
+            name: "tailwater",
+            when: "the second head is that of the tailwater, whose velocity head is left out",
+            definitions: &[
+                // The curve ends at 0.985: its last value is held.
+                ("S", "min(h_2/H, 0.985)"),
+                ("f_low", "1.035*(0.817 - S^4)^0.0647"),
+                ("f_high", "8.686 - 8.403*S"),
+                ("f_published", "f_low when S <= 0.93 otherwise f_high"),
+                (
+                    "f",
+                    "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published",
+                ),
+            ],
+            needs: &[],
+            beyond: Some("h_2/H - 0.985"),
+            limits: &[Limit::at_most("h_2/H", "0.985", "tailwater head over total head, end of the curve")
+                .by(ISO_4360, Confidence::MemoryConfirmed)],
+            ratio: None,
+            uncertainty: None,
+            source: ISO_4360,
+            confidence: Confidence::MemoryConfirmed,
+        },
+        DrownedFlow {
+            name: "crest tapping",
+            when: "the second head is that at the tapping, 20 mm downstream of the crest line",
+            definitions: &[
+                ("S", "h_2/H"),
+                ("f_published", "1.04*(0.945 - S^1.5)^0.256"),
+                (
+                    "f",
+                    "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published",
+                ),
+            ],
+            needs: &[],
+            beyond: None,
+            limits: &[],
+            ratio: Some(0.24),
+            uncertainty: None,
+            source: ISO_4360,
+            confidence: Confidence::MemoryConfirmed,
+        },
+    ],
+    modular: ModularLimit {
+        words: "downstream total head not above 0.75 of the upstream one; tapping head not above 0.24 of it",
+        ratio: Some(0.75),
+        highest: "M_L*H",
         source: ISO_4360_2008,
         confidence: Confidence::Seen,
     },
-    head_measured: Statement {
-        text: "6 times the crest height upstream of the crest line, or 2 times the largest total head \
-               from the toe of the weir, whichever the edition gives",
+    critical: Some(CriticalFlow {
+        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
+        sill: "p",
+        width: Some("b"),
+        approach: ("B", None),
+    }),
+    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the discharge",
+    head_measured: HeadPosition {
+        words: "6 times the crest height upstream of the crest line, or 2 times the largest total head \
+                from the toe of the weir, whichever the edition gives",
+        nearest: Some("min(6*p, 2*p + 2*H)"),
+        farthest: None,
         source: ISO_4360,
         confidence: Confidence::Doubtful,
     },

@@ -63,7 +63,7 @@ pub fn monte_carlo(
     let fixed = problem.fixed();
     let outputs = problem.outputs.clone();
     let corrected = problem.corrected();
-    let program = Program::compile(&mut problem.model, &outputs, &fixed, &corrected);
+    let program = Program::watching_branches(&mut problem.model, &outputs, &fixed, &corrected);
     let sampler = Sampler::new(problem);
     let (mut trials, count, settled) = match amount {
         Amount::Fixed(count) => {

@@ -20,6 +20,8 @@ pub struct Tally {
     pub outside_table: u64,
     /// The equation had no value: the trial is left out.
     pub undefined: u64,
+    /// Another branch of the equation held than at the corrected inputs.
+    pub across: u64,
 }
 
 impl Tally {
@@ -39,6 +41,7 @@ impl Tally {
             dry: self.dry + other.dry,
             outside_table: self.outside_table + other.outside_table,
             undefined: self.undefined + other.undefined,
+            across: self.across + other.across,
         }
     }
 }
@@ -248,6 +251,7 @@ fn super_block(
         if !plain {
             tally.count(&outcomes[..lanes]);
         }
+        tally.across += program.across_branch(workspace, &outcomes[..lanes]);
         for (output, slice) in slices.iter_mut().enumerate() {
             let lanes_of = program.output(workspace, output);
             slice[start..start + lanes].copy_from_slice(&lanes_of[..lanes]);

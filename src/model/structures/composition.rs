@@ -1,0 +1,321 @@
+//! The equation of a compound weir: structures of the catalogue side by side, one total head for all.
+//!
+//! Every section keeps its own texts; their names get the number of the section. What the sections share
+//! (gravity, the approach, its total head) is put in the place of their own.
+
+use std::collections::BTreeSet;
+
+use super::approach::{LARGEST_FLOW, RECTANGULAR, TOTAL_HEAD};
+use super::form::{
+    Form, InstalledLimit, LimitKind, add_sources, add_tailwater, constants, drowned_flow, extend,
+    factor_definitions, identifiers, numbers,
+};
+use super::input::{
+    COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, InputSpec, InstalledInput, KINETIC_ENERGY_COEFFICIENT,
+    Values,
+};
+use super::installation::{Installation, Section};
+use super::structure::{Implicit, Regime, Structure};
+use crate::model::{Blueprint, UnknownText};
+
+/// The level of a section's crest above the lowest crest.
+pub const CREST_LEVEL: InputSpec = InputSpec {
+    domain: [0.0, 20.0],
+    domain_reason: "it is the height above the lowest crest, between 0 m and 20 m",
+    ..InputSpec::length("crest_level", "z", "level of its crest above the lowest crest", "0.15 m")
+};
+
+/// Kinds whose head is read inside the structure, not in an approach that sections could share; and the
+/// compound weir itself.
+const ALONE: [&str; 3] = ["compound", "end-depth", "parshall-flume"];
+
+/// Whether a structure can be a section: its head is read in the common approach, and its law follows
+/// from head and total head without an unknown of its own.
+pub fn can_be_section(structure: &Structure) -> bool {
+    let solved = |regime: &Regime| matches!(regime.implicit, Implicit::Quantity { .. });
+    !ALONE.contains(&structure.kind) && !structure.regimes.iter().any(solved)
+}
+
+/// Names that all sections share.
+const SHARED: [&str; 2] = ["g", "alpha"];
+/// Definitions of a section that the shared approach takes the place of.
+const REPLACED: [&str; 5] = ["A", "H", "Fr", "W_a", "B_m"];
+
+/// The keys that a section can give, besides its kind, level and choice.
+pub fn section_inputs(structure: &'static Structure) -> Vec<InputSpec> {
+    let used = names_in_use(structure);
+    structure
+        .inputs
+        .iter()
+        .copied()
+        .filter(|spec| spec.key != KINETIC_ENERGY_COEFFICIENT.key)
+        .filter(|spec| used.contains(spec.symbol))
+        .map(|spec| if spec.key == "crest_height" { spec.optional() } else { spec })
+        .chain([COEFFICIENT_FACTOR])
+        .collect()
+}
+
+/// Names in the equation of a structure when the total head comes from outside.
+fn names_in_use(structure: &'static Structure) -> BTreeSet<&'static str> {
+    let mut used = BTreeSet::new();
+    for regime in structure.regimes {
+        let kept = kept_definitions(regime).into_iter().map(|(_, text)| text);
+        used.extend(kept.chain([regime.discharge]).flat_map(identifiers));
+        if let super::published::Coefficient::Published(rule) = regime.coefficient {
+            used.extend(identifiers(rule.percent));
+        }
+    }
+    used.extend(structure.adjustments.iter().flat_map(|each| identifiers(each.standard_uncertainty)));
+    // Limits that need the crest's height above the bed have it from the whole.
+    used.insert("p");
+    used
+}
+
+fn kept_definitions(regime: &Regime) -> Vec<(&'static str, &'static str)> {
+    let replaced = |name: &str| regime.implicit == Implicit::Discharge && REPLACED.contains(&name);
+    regime.definitions.iter().copied().filter(|(name, _)| !replaced(name)).collect()
+}
+
+/// The inputs of one section, numbered from 1.
+pub(super) fn inputs(section: &Section, number: usize) -> Vec<InstalledInput> {
+    let structure = section.installation.structure;
+    let given = |spec: &InputSpec| {
+        spec.default_value().is_some() || section.given.iter().any(|key| key == spec.key)
+    };
+    let mut specs = vec![CREST_LEVEL];
+    specs.extend(section_inputs(structure).into_iter().filter(given));
+    if drowned_flow(&section.installation).is_some() {
+        specs.push(DROWNED_FLOW_FACTOR);
+    }
+    specs
+        .into_iter()
+        .map(|spec| InstalledInput {
+            key: format!("section {number} {}", spec.key),
+            symbol: numbered(spec.symbol, number),
+            spec,
+        })
+        .collect()
+}
+
+fn numbered(name: &str, number: usize) -> String {
+    // Not `_2`: that is how the second head is written.
+    format!("{name}_s{number}")
+}
+
+/// A text of a section with its own names numbered.
+fn number_names(text: &str, number: usize, own: &BTreeSet<String>) -> String {
+    let mut result = String::new();
+    let mut rest = text;
+    while let Some(start) = rest.find(|c: char| c.is_alphabetic()) {
+        // A letter inside a number, as in 1e-3, begins no name.
+        let inside_number = rest[..start].ends_with(|c: char| c.is_ascii_digit() || c == '.');
+        let length = rest[start..]
+            .find(|c: char| !(c.is_alphanumeric() || c == '_'))
+            .unwrap_or(rest.len() - start);
+        let word = &rest[start..start + length];
+        result.push_str(&rest[..start]);
+        if own.contains(word) && !inside_number {
+            result.push_str(&numbered(word, number));
+        } else {
+            result.push_str(word);
+        }
+        rest = &rest[start + length..];
+    }
+    result.push_str(rest);
+    result
+}
+
+/// The form of a compound weir: the discharge is the sum of the sections, each at the head above its own
+/// crest; the total head is shared (methods, compound structures).
+pub(super) fn form(installation: &Installation, values: &Values) -> Form {
+    let structure = installation.structure;
+    let whole = &structure.regimes[0];
+    let mut blueprint = Blueprint {
+        inputs: installation.inputs().iter().map(Into::into).collect(),
+        result: "Q".to_owned(),
+        ..Blueprint::default()
+    };
+    extend(&mut blueprint.definitions, &[RECTANGULAR, TOTAL_HEAD]);
+    extend(&mut blueprint.definitions, whole.definitions);
+    add_tailwater(installation, &mut blueprint);
+    let mut result = Form {
+        structure,
+        regime: String::new(),
+        when: "every section passes what its own equation gives at the head above its crest".to_owned(),
+        blueprint,
+        limits: whole.limits.iter().map(Into::into).collect(),
+        automatic: Vec::new(),
+        unstated: Vec::new(),
+        numbers: Vec::new(),
+        highest_tailwater: None,
+    };
+    let (mut regimes, mut flowing, mut beyond) = (Vec::new(), Vec::new(), Vec::new());
+    for (index, section) in installation.sections.iter().enumerate() {
+        let number = index + 1;
+        let added = add_section(installation, section, number, values, &mut result);
+        regimes.push(format!("{number}: {}", added.regime));
+        flowing.push(added.flowing);
+        beyond.extend(added.beyond);
+    }
+    result.regime = format!("sections {}", regimes.join("; "));
+    let sum: Vec<String> = (1..=installation.sections.len()).map(|n| numbered("Q", n)).collect();
+    result.blueprint.unknown = Some(UnknownText {
+        name: "Q".to_owned(),
+        equation: format!("Q = {}", sum.join(" + ")),
+        from: "0".to_owned(),
+        to: LARGEST_FLOW.to_owned(),
+    });
+    result.blueprint.flowing = flowing.into_iter().reduce(|all, next| format!("max({all}, {next})"));
+    result.blueprint.beyond = beyond.into_iter().reduce(|all, next| format!("{all} + {next}"));
+    result
+}
+
+/// What a section adds to the conditions of the whole.
+struct Added {
+    regime: &'static str,
+    flowing: String,
+    beyond: Option<String>,
+}
+
+fn add_section(
+    whole: &Installation,
+    section: &Section,
+    number: usize,
+    values: &Values,
+    to: &mut Form,
+) -> Added {
+    let installation = &section.installation;
+    let structure = installation.structure;
+    let regime = &structure.regimes[(structure.regime_for)(&section_values(values, number))];
+    let drowned = drowned_flow(installation);
+    let inputs = inputs(section, number);
+    let mut own: BTreeSet<String> =
+        ["Q", "h", "h_2"].into_iter().map(str::to_owned).collect();
+    own.extend(inputs.iter().map(|input| input.spec.symbol.to_owned()));
+    let constants = constants(installation);
+    own.extend(constants.iter().map(|(symbol, ..)| symbol.clone()));
+    own.extend(structure.tables.iter().map(|table| table.name.to_owned()));
+    let definitions = kept_definitions(regime);
+    let factor = factor_definitions(installation);
+    own.extend(definitions.iter().chain(factor).map(|(name, _)| (*name).to_owned()));
+    let has_height = structure.inputs.iter().any(|spec| spec.symbol == "p");
+    if regime.implicit == Implicit::Discharge {
+        own.insert("H".to_owned());
+    }
+    if has_height {
+        own.insert("p".to_owned());
+    }
+    let name = |text: &str| number_names(text, number, &own);
+
+    let level = numbered(CREST_LEVEL.symbol, number);
+    let texts = &mut to.blueprint.definitions;
+    texts.push((name("h"), format!("h - {level}")));
+    if regime.implicit == Implicit::Discharge {
+        texts.push((name("H"), format!("H - {level}")));
+    }
+    if whole.second_head.is_some() {
+        texts.push((name("h_2"), format!("h_2 - {level}")));
+    }
+    if has_height && !inputs.iter().any(|input| input.spec.symbol == "p") {
+        texts.push((name("p"), format!("p + {level}")));
+    }
+    texts.extend(definitions.iter().chain(factor).map(|(left, right)| (name(left), name(right))));
+    let flowing = name(regime.flowing);
+    let discharge = format!("({}) when {flowing} > 0 otherwise 0", name(regime.discharge));
+    texts.push((name("Q"), discharge));
+    let blueprint = &mut to.blueprint;
+    blueprint.constants.extend(constants.into_iter().map(|(s, value, d)| (name(&s), value, d)));
+    blueprint.tables.extend(
+        structure
+            .tables
+            .iter()
+            .filter_map(|table| table.in_si())
+            .map(|(table, dimension)| {
+                let numbered = name(table.name());
+                (table.renamed(numbered), dimension)
+            }),
+    );
+    add_limits(structure, regime, &name, (number, &flowing), &own, whole.second_head.is_some(), to);
+    let mut sources = Form { automatic: Vec::new(), unstated: Vec::new(), ..to.clone() };
+    add_sources(structure, regime, drowned, &mut sources);
+    to.automatic.extend(sources.automatic.into_iter().map(|source| super::AutomaticSource {
+        name: format!("{}, section {number}", source.name),
+        acts_on: format!("section {number} {}", source.acts_on),
+        // A section that passes nothing adds nothing.
+        rule: format!("({}) when {flowing} > 0 otherwise 0", name(&source.rule)),
+        ..source
+    }));
+    to.unstated.extend(sources.unstated.into_iter().map(|(keys, why)| {
+        (keys.into_iter().map(|key| format!("section {number} {key}")).collect(), why)
+    }));
+    to.blueprint.borders.extend(regime.borders.iter().map(|text| name(text)));
+    to.numbers.extend(
+        numbers(installation, regime, drowned)
+            .into_iter()
+            .map(|(what, confidence)| (format!("{what} (section {number})"), confidence)),
+    );
+    let left = [regime.beyond, drowned.and_then(|drowned| drowned.beyond)];
+    let left: Vec<String> = left
+        .into_iter()
+        .flatten()
+        .map(|text| {
+            let text = name(text);
+            format!("(1 when {flowing} > 0 otherwise 0)*(1 when {text} > 0 otherwise 0)")
+        })
+        .collect();
+    let beyond = (!left.is_empty()).then(|| left.join(" + "));
+    Added { regime: regime.name, flowing, beyond }
+}
+
+/// The section's limits that the shared approach leaves a meaning, and its modular limit.
+fn add_limits(
+    structure: &Structure,
+    regime: &Regime,
+    name: &dyn Fn(&str) -> String,
+    (number, flowing): (usize, &str),
+    own: &BTreeSet<String>,
+    tailwater_known: bool,
+    to: &mut Form,
+) {
+    let known = |text: &str| {
+        let replaced = regime.implicit == Implicit::Discharge;
+        let mut words = identifiers(text);
+        !words.any(|word| {
+            let foreign = replaced && REPLACED.contains(&word) && word != "H";
+            let input = structure.inputs.iter().any(|spec| spec.symbol == word);
+            foreign || (input && !own.contains(word) && !SHARED.contains(&word))
+        })
+    };
+    let install = |mut limit: InstalledLimit| {
+        limit.quantity = name(&limit.quantity);
+        limit.bound = name(&limit.bound);
+        limit.applies = Some(flowing.to_owned());
+        limit.meaning = format!("section {number}: {}", limit.meaning);
+        limit
+    };
+    let of_use = regime.limits.iter().filter(|l| known(l.quantity) && known(l.bound));
+    to.limits.extend(of_use.map(|limit| install(limit.into())));
+    if tailwater_known {
+        let modular = structure.modular;
+        to.limits.push(install(InstalledLimit {
+            kind: LimitKind::Modular,
+            ..super::form::modular_limit(structure)
+        }));
+        debug_assert!(known(modular.highest));
+    }
+}
+
+/// The indicated values of one section: its own inputs, and the head above its crest.
+fn section_values(values: &Values, number: usize) -> Values {
+    let prefix = format!("section {number} ");
+    let level = values.given(&format!("{prefix}{}", CREST_LEVEL.key)).unwrap_or(0.0);
+    let own = values
+        .iter()
+        .filter_map(|(key, value)| Some((key.strip_prefix(&prefix)?.to_owned(), value)))
+        .collect::<Vec<_>>();
+    let height = own.iter().any(|(key, _)| key == "crest_height");
+    let whole = values.given("crest_height").map(|height| height + level);
+    let derived = (!height).then(|| ("crest_height".to_owned(), whole));
+    let head = ("head".to_owned(), values.given("head").map(|head| head - level));
+    Values::new(own.into_iter().chain(derived).chain([head]))
+}

@@ -1,0 +1,132 @@
+//! A structure as it is installed: with its size, its second head, its sections.
+
+use super::form::{Form, single};
+use super::input::{
+    COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, GRAVITY, HEAD, InstalledInput, TAILWATER_HEAD, Values,
+};
+use super::structure::Structure;
+use super::{composition, compound};
+use crate::model::expression::Table;
+
+/// A structure as it is installed.
+#[derive(Clone, Debug)]
+pub struct Installation {
+    /// What it is.
+    pub structure: &'static Structure,
+    /// Which option of its choice; of no meaning where it has none.
+    pub option: usize,
+    /// What is known of the second head; `None` where the file says nothing.
+    pub second_head: Option<SecondHead>,
+    /// Its sections, if it is a compound weir.
+    pub sections: Vec<Section>,
+}
+
+/// A section of a compound weir.
+#[derive(Clone, Debug)]
+pub struct Section {
+    /// The structure in it; it has no second head of its own.
+    pub installation: Installation,
+    /// Keys of the inputs that the file gives for it, besides those with a default.
+    pub given: Vec<String>,
+}
+
+/// The head of the tailwater, or at a crest tapping.
+#[derive(Clone, Debug, PartialEq)]
+pub struct SecondHead {
+    /// Which of the structure's drowned-flow equations takes over; `None` where it has none.
+    pub drowned: Option<usize>,
+    /// A modular limit in place of the published one.
+    pub modular_limit: Option<f64>,
+    /// The level against discharge, m against m3/s, and the level that it gives at the values asked
+    /// about; without it the second head is an input by itself.
+    pub rating: Option<(Table, f64)>,
+}
+
+impl Installation {
+    /// A structure by itself, its first option, the tailwater unknown; a compound weir with two sections
+    /// of triangular profile.
+    pub fn plain(structure: &'static Structure) -> Self {
+        let sections =
+            if structure.kind == compound::KIND { compound::example() } else { Vec::new() };
+        let word = structure.choice.map_or("", |choice| choice.example);
+        let option = structure.choice.and_then(|choice| choice.find(word)).unwrap_or(0);
+        Self { structure, option, second_head: None, sections }
+    }
+
+    /// Places of the drowned-flow equations that are published for it.
+    pub fn drowned(&self) -> Vec<usize> {
+        let known = |symbol: &&str| {
+            self.constants_of_option().iter().any(|(name, value)| name == symbol && !value.is_nan())
+        };
+        (0..self.structure.drowned.len())
+            .filter(|index| self.structure.drowned[*index].needs.iter().all(known))
+            .collect()
+    }
+
+    /// The constants of the option, NaN where none is published.
+    pub(super) fn constants_of_option(&self) -> Vec<(&'static str, f64)> {
+        let Some(choice) = self.structure.choice else { return Vec::new() };
+        let names = choice.symbols.iter().map(|(symbol, _)| *symbol);
+        names.zip(choice.options[self.option].1.iter().copied()).collect()
+    }
+
+    /// All inputs: the head, the structure's own, the factor on the coefficient, gravity; those of the
+    /// sections and of the second head.
+    pub fn inputs(&self) -> Vec<InstalledInput> {
+        let mut inputs: Vec<InstalledInput> = vec![HEAD.into()];
+        inputs.extend(self.structure.inputs.iter().map(|spec| InstalledInput::from(*spec)));
+        if self.sections.is_empty() {
+            inputs.push(COEFFICIENT_FACTOR.into());
+        }
+        inputs.push(GRAVITY.into());
+        for (index, section) in self.sections.iter().enumerate() {
+            inputs.extend(composition::inputs(section, index + 1));
+        }
+        if let Some(second) = &self.second_head {
+            let mut tailwater = InstalledInput::from(TAILWATER_HEAD);
+            if second.rating.is_some() {
+                tailwater.symbol = SHIFTED_TAILWATER.to_owned();
+            }
+            inputs.push(tailwater);
+            if self.sections.is_empty() && second.drowned.is_some() {
+                inputs.push(DROWNED_FLOW_FACTOR.into());
+            }
+        }
+        inputs
+    }
+
+    /// The equation that holds at indicated values, with its limits and the error sources it brings.
+    pub fn form(&self, values: &Values) -> Form {
+        if self.sections.is_empty() {
+            single(self, (self.structure.regime_for)(values))
+        } else {
+            composition::form(self, values)
+        }
+    }
+
+    /// Every form of the equation, for a sheet of the catalogue.
+    pub fn forms(&self) -> Vec<Form> {
+        if self.sections.is_empty() {
+            (0..self.structure.regimes.len()).map(|regime| single(self, regime)).collect()
+        } else {
+            vec![composition::form(self, &Values::default())]
+        }
+    }
+
+    /// Inputs of which no uncertainty is published, so that a source of the user's must act on one of
+    /// each list; and why.
+    pub fn unstated(&self) -> Vec<(Vec<String>, String)> {
+        self.forms().swap_remove(0).unstated
+    }
+
+    /// Names of the error sources that it brings with it, whichever form holds, with the input that each
+    /// acts on.
+    pub fn automatic_sources(&self) -> Vec<(String, String)> {
+        // All forms of a structure bring the same ones; a test holds it so.
+        let sources = self.forms().swap_remove(0).automatic;
+        sources.into_iter().map(|each| (each.name, each.acts_on)).collect()
+    }
+}
+
+/// The symbol of the tailwater's head where a rating gives the level: the input then shifts it.
+pub(super) const SHIFTED_TAILWATER: &str = "h_t";

@@ -1,0 +1,167 @@
+//! Limits over the whole range of heads: the heads at which each is not kept.
+
+use crate::model::structures::{Form, InstalledLimit};
+use crate::model::{Model, Outcome, Program};
+use crate::station::{Moment, Station};
+
+use super::limits::LimitState;
+
+/// Heads at which the range is looked at; what happens between two of them twice is not seen.
+const HEADS: usize = 65;
+/// Halvings of a step of the range: the head at which a limit fails is known to 1e-6 of a step.
+const HALVINGS: usize = 20;
+
+/// A limit, and the indicated heads at which it is not kept, from and to, m.
+pub(super) type Failing = (InstalledLimit, Vec<[f64; 2]>);
+
+/// A form of the equation, compiled for its limits.
+struct Compiled {
+    form: Form,
+    program: Program,
+}
+
+/// Looks at a station over its range of heads.
+struct Sweep<'s> {
+    station: &'s Station,
+    moment: Moment,
+    compiled: Vec<Compiled>,
+}
+
+/// The limits of every form that the equation takes over the station's range, with the heads at which
+/// each is not kept. `None` where no range is stated, or the equation is the user's own.
+pub(super) fn failing_heads(station: &Station, moment: Moment) -> Option<Vec<Failing>> {
+    let [low, high] = station.head.as_ref()?.range.as_ref()?;
+    let step = (high.value - low.value) / (HEADS - 1) as f64;
+    let heads: Vec<f64> = (0..HEADS).map(|index| low.value + step * index as f64).collect();
+    let mut sweep = Sweep { station, moment, compiled: Vec::new() };
+    let states: Vec<(usize, Vec<bool>)> =
+        heads.iter().map(|head| sweep.kept_at(*head)).collect::<Option<_>>()?;
+    let mut found: Vec<Failing> = Vec::new();
+    for form in 0..sweep.compiled.len() {
+        for place in 0..sweep.compiled[form].form.limits.len() {
+            let fails = |state: &(usize, Vec<bool>)| state.0 == form && !state.1[place];
+            let failing: Vec<bool> = states.iter().map(fails).collect();
+            let intervals = sweep.intervals(&heads, &failing, form, place);
+            let limit = sweep.compiled[form].form.limits[place].clone();
+            match found.iter_mut().find(|(known, _)| *known == limit) {
+                Some((_, known)) => known.extend(intervals),
+                None => found.push((limit, intervals)),
+            }
+        }
+    }
+    for (_, intervals) in &mut found {
+        join(intervals, step);
+    }
+    Some(found)
+}
+
+/// Notes with each limit at one head where in the range it is not kept.
+pub(super) fn note_failing_heads(states: &mut [LimitState], failing: &[Failing]) {
+    for state in states {
+        let found = failing.iter().find(|(limit, _)| *limit == state.limit);
+        state.fails_at = found.map(|(_, intervals)| intervals.clone());
+    }
+}
+
+impl Sweep<'_> {
+    /// Which form holds at a head, and which of its limits are kept there.
+    fn kept_at(&mut self, head: f64) -> Option<(usize, Vec<bool>)> {
+        let moment = Moment { head: Some(head), ..self.moment };
+        let (form, inputs) = self.station.sketch(moment).ok()??;
+        let known = self.compiled.iter().position(|each| each.form.regime == form.regime);
+        let index = match known {
+            Some(index) => index,
+            None => {
+                self.compiled.push(compile(form, &inputs)?);
+                self.compiled.len() - 1
+            }
+        };
+        let Compiled { form, program } = &self.compiled[index];
+        let (values, outcome) = program.evaluate(&inputs);
+        let kept = form.limits.iter().zip(values.chunks(3)).map(|(limit, values)| {
+            let [quantity, bound, applies] = [values[0], values[1], values[2]];
+            // Where nothing flows, there is nothing to hold against the limits.
+            let stands = limit.applies.is_none() || applies > 0.0;
+            !stands || outcome == Outcome::Dry || limit.side.allows(quantity, bound)
+        });
+        Some((index, kept.collect()))
+    }
+
+    fn fails(&mut self, head: f64, form: usize, place: usize) -> bool {
+        self.kept_at(head).is_some_and(|(found, kept)| found == form && !kept[place])
+    }
+
+    /// Where a limit is not kept, with the ends found by halving the steps in which it changes.
+    fn intervals(
+        &mut self,
+        heads: &[f64],
+        failing: &[bool],
+        form: usize,
+        place: usize,
+    ) -> Vec<[f64; 2]> {
+        let mut intervals: Vec<[f64; 2]> = Vec::new();
+        for (index, fails) in failing.iter().enumerate() {
+            if !fails {
+                continue;
+            }
+            if index == 0 || !failing[index - 1] {
+                let start = match index {
+                    0 => heads[0],
+                    _ => self.border(heads[index], heads[index - 1], form, place),
+                };
+                intervals.push([start, heads[index]]);
+            }
+            let end = match heads.get(index + 1) {
+                Some(next) if !failing[index + 1] => self.border(heads[index], *next, form, place),
+                _ => heads[index],
+            };
+            if let Some(last) = intervals.last_mut() {
+                last[1] = end;
+            }
+        }
+        intervals
+    }
+
+    /// The last head at which the limit still fails, between one at which it does and one at which not.
+    fn border(&mut self, mut failing: f64, mut kept: f64, form: usize, place: usize) -> f64 {
+        for _ in 0..HALVINGS {
+            let middle = f64::midpoint(failing, kept);
+            if self.fails(middle, form, place) {
+                failing = middle;
+            } else {
+                kept = middle;
+            }
+        }
+        failing
+    }
+}
+
+fn compile(form: Form, inputs: &[f64]) -> Option<Compiled> {
+    let mut model = Model::build(&form.blueprint).ok()?;
+    let mut outputs = Vec::new();
+    for limit in &form.limits {
+        let quantity = model.expression(&limit.quantity).ok()?.0;
+        outputs.push(quantity);
+        outputs.push(model.expression(&limit.bound).ok()?.0);
+        outputs.push(match &limit.applies {
+            Some(text) => model.expression(text).ok()?.0,
+            None => quantity,
+        });
+    }
+    let free = vec![None; model.inputs().len()];
+    let program = Program::compile(&mut model, &outputs, &free, inputs);
+    Some(Compiled { form, program })
+}
+
+/// Joins intervals of neighbouring forms that meet.
+fn join(intervals: &mut Vec<[f64; 2]>, step: f64) {
+    intervals.sort_by(|a, b| a[0].total_cmp(&b[0]));
+    let mut joined: Vec<[f64; 2]> = Vec::new();
+    for interval in intervals.drain(..) {
+        match joined.last_mut() {
+            Some(last) if interval[0] - last[1] <= 1e-5 * step => last[1] = last[1].max(interval[1]),
+            _ => joined.push(interval),
+        }
+    }
+    *intervals = joined;
+}
