@@ -110,7 +110,10 @@ fn read(file: &[u8]) -> Station {
 }
 
 fn problem(station: &Station, head: f64) -> Problem {
-    station.at(Moment { head: Some(head), ..Moment::default() }).expect("a bench is run at a head that has a flow").problem
+    station
+        .at(Moment { head: Some(head), ..Moment::default() })
+        .expect("a bench is run at a head that has a flow")
+        .problem
 }
 
 /// What a user's run comes to, from the bytes of the file to both intervals.

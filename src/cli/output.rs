@@ -27,9 +27,7 @@ impl From<Refusal> for Failure {
             | Refusal::HeadNotRead
             | Refusal::NoTailwater
             | Refusal::TailwaterNotRead
-            | Refusal::Equation(_) => {
-                Self::BadQuestion(refusal.to_string())
-            }
+            | Refusal::Equation(_) => Self::BadQuestion(refusal.to_string()),
             Refusal::Dry(_) | Refusal::NoSolution(_) | Refusal::NoHeadForFlow { .. } => {
                 Self::CannotBeStated(refusal)
             }

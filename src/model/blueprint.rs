@@ -30,8 +30,9 @@ pub struct Blueprint {
     pub tables: Vec<(Table, Dimension)>,
     /// Name and expression, in any order.
     pub definitions: Vec<(String, String)>,
-    /// A quantity given by an equation that it must satisfy.
-    pub unknown: Option<UnknownText>,
+    /// Quantities given by an equation that they must satisfy. The first may depend on all others; each
+    /// of those on the first, and on no other.
+    pub unknowns: Vec<UnknownText>,
     /// The name of the result: a definition, or the unknown.
     pub result: String,
     /// An expression that is positive where water flows; elsewhere the result is 0.

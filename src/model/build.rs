@@ -3,7 +3,9 @@
 use std::collections::{BTreeMap, HashSet};
 use std::ops::Range;
 
-use super::blueprint::{Blueprint, Fault, FaultProblem, Part, mismatch_fault, syntax_fault};
+use super::blueprint::{
+    Blueprint, Fault, FaultProblem, Part, UnknownText, mismatch_fault, syntax_fault,
+};
 use super::expression::{
     Function, Graph, MismatchError, Number, SymbolId, Tree, TreeKind, parse, parse_equation,
 };
@@ -65,18 +67,21 @@ impl<'a> Builder<'a> {
         if !self.faults.is_empty() {
             return Err(self.faults);
         }
-        let order = self.order(&trees, bounds.as_ref());
+        let order = self.order(&trees, &bounds);
         if !self.faults.is_empty() {
             return Err(self.faults);
         }
         for name in order {
-            match (trees.get(&name), &bounds) {
+            match (trees.get(&name), bounds.get(&name)) {
                 (Some(tree), _) => self.define(&name, tree),
                 (None, Some(bounds)) => self.declare_unknown(&name, bounds),
                 (None, None) => {}
             }
         }
-        self.close_unknown();
+        for unknown in &self.blueprint.unknowns {
+            self.close_unknown(unknown);
+        }
+        self.total_slope();
         self.find_result();
         self.read_conditions();
         if self.faults.is_empty() { Ok(self.model) } else { Err(self.faults) }
@@ -99,11 +104,11 @@ impl<'a> Builder<'a> {
                 });
             }
         }
-        if let Some(unknown) = &self.blueprint.unknown
-            && !seen.insert(&unknown.name)
-        {
-            let problem = FaultProblem::Duplicate(unknown.name.clone());
-            self.faults.push(Fault { part: Part::UnknownName, span: 0..0, problem });
+        for unknown in &self.blueprint.unknowns {
+            if !seen.insert(&unknown.name) {
+                let problem = FaultProblem::Duplicate(unknown.name.clone());
+                self.faults.push(Fault { part: Part::UnknownName, span: 0..0, problem });
+            }
         }
     }
 
@@ -120,30 +125,39 @@ impl<'a> Builder<'a> {
         trees
     }
 
-    /// The bounds of the unknown; its equation is read for its faults only, and again at the end.
-    fn parse_bounds(&mut self) -> Option<[Tree; 2]> {
-        let unknown = self.blueprint.unknown.as_ref()?;
-        if let Err(error) = parse_equation(&unknown.equation) {
-            self.faults.push(syntax_fault(&Part::Equation, error));
-        }
-        let mut read = |part, text| match parse(text) {
-            Ok(tree) => Some(tree),
-            Err(error) => {
-                self.faults.push(syntax_fault(&part, error));
-                None
+    /// The bounds of the unknowns; their equations are read for their faults only, and again at the end.
+    fn parse_bounds(&mut self) -> BTreeMap<String, [Tree; 2]> {
+        let mut bounds = BTreeMap::new();
+        for unknown in &self.blueprint.unknowns {
+            if let Err(error) = parse_equation(&unknown.equation) {
+                self.faults.push(syntax_fault(&Part::Equation, error));
             }
-        };
-        let from = read(Part::From, &unknown.from);
-        let to = read(Part::To, &unknown.to);
-        Some([from?, to?])
+            let mut read = |part, text| match parse(text) {
+                Ok(tree) => Some(tree),
+                Err(error) => {
+                    self.faults.push(syntax_fault(&part, error));
+                    None
+                }
+            };
+            let from = read(Part::From, &unknown.from);
+            let to = read(Part::To, &unknown.to);
+            if let (Some(from), Some(to)) = (from, to) {
+                bounds.insert(unknown.name.clone(), [from, to]);
+            }
+        }
+        bounds
     }
 
-    /// Definitions in an order in which each stands after those it needs. The unknown needs its bounds.
-    fn order(&mut self, trees: &BTreeMap<String, Tree>, bounds: Option<&[Tree; 2]>) -> Vec<String> {
+    /// Definitions in an order in which each stands after those it needs. An unknown needs its bounds.
+    fn order(
+        &mut self,
+        trees: &BTreeMap<String, Tree>,
+        bounds: &BTreeMap<String, [Tree; 2]>,
+    ) -> Vec<String> {
         let mut needs: Vec<(String, HashSet<String>)> = Vec::new();
-        if let (Some(unknown), Some(bounds)) = (&self.blueprint.unknown, bounds) {
+        for unknown in &self.blueprint.unknowns {
             let mut names = HashSet::new();
-            for tree in bounds {
+            for tree in &bounds[&unknown.name] {
                 collect_names(tree, &mut names);
             }
             needs.push((unknown.name.clone(), names));
@@ -163,8 +177,8 @@ impl<'a> Builder<'a> {
             let Some(next) = needs.iter().position(|(_, names)| ready(names)) else {
                 let circle = circle(&needs);
                 let first = circle[0].clone();
-                let unknown = self.blueprint.unknown.as_ref().map(|unknown| &unknown.name);
-                let part = if unknown == Some(&first) { Part::To } else { Part::Definition(first) };
+                let is_unknown = bounds.contains_key(&first);
+                let part = if is_unknown { Part::To } else { Part::Definition(first) };
                 self.fault(part, 0..0, FaultProblem::Circular(circle));
                 return Vec::new();
             };
@@ -232,11 +246,9 @@ impl<'a> Builder<'a> {
         });
     }
 
-    fn close_unknown(&mut self) {
-        let Some(text) = self.blueprint.unknown.as_ref() else { return };
-        if !self.faults.is_empty() {
-            return;
-        }
+    fn close_unknown(&mut self, text: &UnknownText) {
+        let found = self.model.unknowns.iter().position(|unknown| unknown.name == text.name);
+        let Some(index) = found.filter(|_| self.faults.is_empty()) else { return };
         let Ok(sides) = parse_equation(&text.equation) else { return };
         let [left, right] = &sides;
         let lowered = [left, right].map(|side| self.model.lower(side, &Part::Equation));
@@ -264,7 +276,6 @@ impl<'a> Builder<'a> {
         match lowered {
             [Ok(left), Ok(right)] => {
                 let residual = self.model.graph.difference(left, right);
-                let index = self.model.unknowns.len() - 1;
                 let slope =
                     self.model.graph.derivative(residual, self.model.unknowns[index].symbol);
                 if self.model.graph.is_zero(slope) {
@@ -276,6 +287,18 @@ impl<'a> Builder<'a> {
             }
             sides => self.faults.extend(sides.into_iter().filter_map(Result::err).flatten()),
         }
+    }
+
+    /// The slope of the first unknown's residual through the others, which follow it.
+    fn total_slope(&mut self) {
+        if self.model.unknowns.len() < 2 || !self.faults.is_empty() {
+            return;
+        }
+        let first = &self.blueprint.unknowns[0].name;
+        debug_assert!(self.model.unknowns[0].name == *first, "the others need the first");
+        let Unknown { residual, symbol, .. } = self.model.unknowns[0];
+        let slope = self.model.derivative_past_first(residual, symbol);
+        self.model.unknowns[0].slope = slope;
     }
 
     fn find_result(&mut self) {
@@ -322,7 +345,7 @@ impl<'a> Builder<'a> {
 fn all_names(blueprint: &Blueprint) -> Vec<String> {
     let inputs = blueprint.inputs.iter().map(|input| input.symbol.clone());
     let definitions = blueprint.definitions.iter().map(|(name, _)| name.clone());
-    let unknown = blueprint.unknown.iter().map(|unknown| unknown.name.clone());
+    let unknown = blueprint.unknowns.iter().map(|unknown| unknown.name.clone());
     let functions = Function::ALL.iter().map(|(name, _)| (*name).to_owned());
     let others = ["sqrt", "min", "max"].map(str::to_owned);
     inputs.chain(definitions).chain(unknown).chain(functions).chain(others).collect()

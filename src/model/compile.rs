@@ -27,11 +27,14 @@ pub(super) struct Compiler<'m> {
     constants: Vec<(u32, f64)>,
     inputs: Vec<Option<u32>>,
     drafts: Vec<(u32, Draft)>,
-    /// While the body of a solve is made: what depends on its unknown, and the outer state.
-    body: Option<Body>,
+    /// While the body of a solve is made: the body, and those around it.
+    bodies: Vec<Body>,
 }
 
+/// The body of a solve: what has to be computed anew for each value of its unknown.
 struct Body {
+    /// The unknown.
+    symbol: Id,
     /// Nodes that contain the unknown, and nodes that do not; those made on the way are added.
     depends: HashSet<Id>,
     independent: HashSet<Id>,
@@ -53,7 +56,7 @@ impl<'m> Compiler<'m> {
             constants: Vec::new(),
             inputs,
             drafts: Vec::new(),
-            body: None,
+            bodies: Vec::new(),
         }
     }
 
@@ -84,42 +87,52 @@ impl<'m> Compiler<'m> {
     }
 
     fn emit(&mut self, id: Id) -> Value {
-        let in_body = self.depends(id);
-        let known = match &self.body {
-            Some(body) if in_body => body.known.get(&id),
-            _ => self.known.get(&id),
-        };
-        if let Some(value) = known {
-            return *value;
-        }
-        // A node of the body that does not depend on the unknown is computed once, outside.
-        let outer = if in_body { None } else { self.body.take() };
-        let value = self.emit_new(id);
-        if let Some(outer) = outer {
-            self.body = Some(outer);
-        }
-        match &mut self.body {
-            Some(body) if in_body => body.known.insert(id, value),
-            _ => self.known.insert(id, value),
-        };
+        // A node belongs to the innermost body whose unknown it contains; the bodies inside that one are
+        // put aside while it is made, so that it is computed once, outside of them.
+        let level = (0..self.bodies.len()).rev().find(|level| self.depends(id, *level));
+        let inside = self.bodies.split_off(level.map_or(0, |level| level + 1));
+        let known = self.bodies.last().map_or(&self.known, |body| &body.known).get(&id).copied();
+        let value = known.unwrap_or_else(|| self.emit_new(id));
+        self.bodies.last_mut().map_or(&mut self.known, |body| &mut body.known).insert(id, value);
+        self.bodies.extend(inside);
         value
     }
 
-    /// Whether a node contains the unknown that is being solved for.
-    fn depends(&mut self, id: Id) -> bool {
-        let Some(body) = &self.body else { return false };
+    /// Whether a node contains the unknown that a body solves for, itself or through an unknown that
+    /// follows it.
+    fn depends(&mut self, id: Id, level: usize) -> bool {
+        let body = &self.bodies[level];
         if body.depends.contains(&id) {
             return true;
         }
         if body.independent.contains(&id) {
             return false;
         }
-        let operands = self.graph().operands(id);
-        let found = operands.into_iter().any(|operand| self.depends(operand));
-        if let Some(body) = &mut self.body {
-            if found { body.depends.insert(id) } else { body.independent.insert(id) };
-        }
+        let found = if let Node::Symbol(symbol) = *self.graph().node(id) {
+            self.follows(id, symbol, level)
+        } else {
+            let operands = self.graph().operands(id);
+            operands.into_iter().any(|operand| self.depends(operand, level))
+        };
+        let body = &mut self.bodies[level];
+        if found {
+            body.depends.insert(id)
+        } else {
+            body.independent.insert(id)
+        };
         found
+    }
+
+    /// Whether a symbol is an unknown that follows the one of a body. One that is being solved for itself
+    /// has a value there and follows none.
+    fn follows(&mut self, id: Id, symbol: SymbolId, level: usize) -> bool {
+        let Some(unknown) = (symbol.0 as usize).checked_sub(self.fixed.len()) else { return false };
+        if self.bodies.iter().any(|body| body.symbol == id) {
+            return false;
+        }
+        let parts = self.model.unknown_parts(unknown);
+        let reached = self.graph().reachable([parts.lower, parts.upper, parts.residual]);
+        reached.contains(&self.bodies[level].symbol)
     }
 
     fn emit_new(&mut self, id: Id) -> Value {
@@ -188,7 +201,8 @@ impl<'m> Compiler<'m> {
         let upper = self.emit(parts.upper);
         let (lower, upper) = (self.in_register(lower), self.in_register(upper));
         let register = self.fresh();
-        self.body = Some(Body {
+        self.bodies.push(Body {
+            symbol: parts.symbol,
             depends: HashSet::from([parts.symbol]),
             independent: HashSet::new(),
             known: HashMap::from([(parts.symbol, Value::Virtual(register))]),
@@ -203,8 +217,8 @@ impl<'m> Compiler<'m> {
         }
         let slope = self.emit(parts.slope);
         let (residual, slope) = (self.in_register(residual), self.in_register(slope));
-        let body = self.body.take().map(|body| body.drafts).unwrap_or_default();
-        self.drafts.push((register, Draft::Solve { lower, upper, body, residual, slope }));
+        let body = self.bodies.pop().map(|body| body.drafts).unwrap_or_default();
+        self.push(register, Draft::Solve { lower, upper, body, residual, slope });
         Value::Virtual(register)
     }
 
@@ -225,15 +239,19 @@ impl<'m> Compiler<'m> {
 
     fn draft(&mut self, kind: DraftKind, operands: Vec<u32>) -> Value {
         let register = self.fresh();
-        let draft = (register, Draft::Plain(kind, operands));
-        match &mut self.body {
+        self.push(register, Draft::Plain(kind, operands));
+        Value::Virtual(register)
+    }
+
+    /// Adds an operation to the innermost body.
+    fn push(&mut self, register: u32, draft: Draft) {
+        match self.bodies.last_mut() {
             Some(body) => {
                 body.own.insert(register);
-                body.drafts.push(draft);
+                body.drafts.push((register, draft));
             }
-            None => self.drafts.push(draft),
+            None => self.drafts.push((register, draft)),
         }
-        Value::Virtual(register)
     }
 
     fn plain(
@@ -401,23 +419,16 @@ impl<'m> Compiler<'m> {
     }
 
     fn root(&mut self, register: u32) -> Value {
-        let of_body = self.body.as_ref().is_some_and(|body| body.own.contains(&register));
-        let known = match &self.body {
-            Some(body) if of_body => body.roots.get(&register),
-            _ => self.roots.get(&register),
+        let level = self.bodies.iter().rposition(|body| body.own.contains(&register));
+        let inside = self.bodies.split_off(level.map_or(0, |level| level + 1));
+        let roots = self.bodies.last().map_or(&self.roots, |body| &body.roots);
+        let value = match roots.get(&register) {
+            Some(value) => *value,
+            None => self.draft(DraftKind::Root, vec![register]),
         };
-        if let Some(value) = known {
-            return *value;
-        }
-        let outer = if of_body { None } else { self.body.take() };
-        let value = self.draft(DraftKind::Root, vec![register]);
-        if let Some(outer) = outer {
-            self.body = Some(outer);
-        }
-        match &mut self.body {
-            Some(body) if of_body => body.roots.insert(register, value),
-            _ => self.roots.insert(register, value),
-        };
+        let roots = self.bodies.last_mut().map_or(&mut self.roots, |body| &mut body.roots);
+        roots.insert(register, value);
+        self.bodies.extend(inside);
         value
     }
 

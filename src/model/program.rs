@@ -90,11 +90,7 @@ impl Program {
 
     /// How many of the first `lanes` lanes, after a run, fall on another branch of the equation than the
     /// nominal inputs. Lanes without a value or without flow do not count.
-    pub fn across_branch(
-        &self,
-        workspace: &Workspace,
-        outcomes: &[Outcome],
-    ) -> u64 {
+    pub fn across_branch(&self, workspace: &Workspace, outcomes: &[Outcome]) -> u64 {
         if self.watched.is_empty() {
             return 0;
         }
@@ -103,8 +99,11 @@ impl Program {
             self.watched.iter().any(|each| each.holds(registers, lane) != each.nominal)
         };
         let counts = |outcome: &Outcome| matches!(outcome, Outcome::Value | Outcome::OutsideTable);
-        outcomes.iter().enumerate().filter(|(lane, outcome)| counts(outcome) && across(*lane)).count()
-            as u64
+        outcomes
+            .iter()
+            .enumerate()
+            .filter(|(lane, outcome)| counts(outcome) && across(*lane))
+            .count() as u64
     }
 
     /// A fresh workspace.
@@ -207,19 +206,7 @@ impl Program {
     fn start_near(&mut self, nominal: &[f64]) {
         let mut workspace = self.workspace();
         self.fill(&mut workspace, nominal);
-        for index in 0..self.steps.len() {
-            let registers = &mut workspace.registers;
-            registers.run(&self.steps[index..=index], &self.tables, &(0..1), false);
-            let Step { to, operation: Operation::Solve(solve) } = &mut self.steps[index] else {
-                continue;
-            };
-            let solution = registers.lanes[*to as usize][0];
-            if solution.is_finite() {
-                solve.start = solution - registers.lanes[solve.lower as usize][0];
-                registers.run(&solve.body, &self.tables, &(0..1), false);
-                solve.rising = registers.lanes[solve.slope as usize][0].signum();
-            }
-        }
+        start_steps(&mut self.steps, &self.tables, &mut workspace.registers);
     }
 }
 
@@ -227,5 +214,20 @@ impl Watched {
     fn holds(&self, registers: &Registers, lane: usize) -> bool {
         let [left, right] = self.sides.map(|side| registers.lanes[side as usize][lane]);
         self.relation.holds(left, right)
+    }
+}
+
+/// Runs steps in the first lane and lets each solve among them start where it ended; those inside of
+/// another likewise.
+fn start_steps(steps: &mut [Step], tables: &[Table], registers: &mut Registers) {
+    for index in 0..steps.len() {
+        registers.run(&steps[index..=index], tables, &(0..1), false);
+        let Step { to, operation: Operation::Solve(solve) } = &mut steps[index] else { continue };
+        let solution = registers.lanes[*to as usize][0];
+        if solution.is_finite() {
+            solve.start = solution - registers.lanes[solve.lower as usize][0];
+            start_steps(&mut solve.body, tables, registers);
+            solve.rising = registers.lanes[solve.slope as usize][0].signum();
+        }
     }
 }

@@ -5,8 +5,8 @@ use std::collections::{BTreeMap, HashMap};
 use super::blueprint::{Blueprint, Fault, Input, Part, mismatch_fault, syntax_fault};
 use super::build::Builder;
 use super::expression::{
-    Dimensions, Graph, Id, MismatchError, Names, Node, Number, Relation, Scope, SymbolId, Table, TableId,
-    Tree, parse,
+    Dimensions, Graph, Id, MismatchError, Names, Node, Number, Relation, Scope, SymbolId, Table,
+    TableId, Tree, parse,
 };
 use super::program::{Outcome, Program};
 use crate::units::Dimension;
@@ -174,15 +174,34 @@ impl Model {
     /// dy/dx = ∂y/∂x + ∂y/∂H · dH/dx,   dH/dx = -(∂F/∂x) / (∂F/∂H)
     /// ```
     ///
-    /// (implicit-function theorem; JCGM 102:2011 6.3 uses the same).
+    /// (implicit-function theorem; JCGM 102:2011 6.3 uses the same). Where other unknowns follow the
+    /// first, they are gone through first, at a fixed value of it.
     pub fn derivative(&mut self, of: Id, input: usize) -> Id {
         let by = SymbolId(input as u32);
+        let Some(first) = self.unknowns.first().map(|unknown| unknown.symbol) else {
+            return self.graph.derivative(of, by);
+        };
+        let held = self.derivative_past_first(of, by);
+        let through = self.derivative_past_first(of, first);
+        if self.graph.is_zero(through) {
+            return held;
+        }
+        let slope = self.unknown_slope(0, input);
+        let term = self.graph.product([through, slope]);
+        self.graph.sum([held, term])
+    }
+
+    /// The derivative by a symbol, the first unknown's or an input's, through the unknowns after the first.
+    pub(super) fn derivative_past_first(&mut self, of: Id, by: SymbolId) -> Id {
         let mut result = self.graph.derivative(of, by);
-        for index in 0..self.unknowns.len() {
-            let through = self.graph.derivative(of, self.unknowns[index].symbol);
+        for index in 1..self.unknowns.len() {
+            let Unknown { symbol, residual, slope, .. } = self.unknowns[index];
+            let through = self.graph.derivative(of, symbol);
             if !self.graph.is_zero(through) {
-                let slope = self.unknown_slope(index, input);
-                let term = self.graph.product([through, slope]);
+                let by_symbol = self.graph.derivative(residual, by);
+                let ratio = self.graph.quotient(by_symbol, slope);
+                let ratio = self.graph.negated(ratio);
+                let term = self.graph.product([through, ratio]);
                 result = self.graph.sum([result, term]);
             }
         }
@@ -194,10 +213,15 @@ impl Model {
         self.graph.derivative(of, by)
     }
 
-    /// How an unknown changes with an input.
+    /// How an unknown changes with an input: all told for the first, at a fixed value of the first for
+    /// the others.
     pub fn unknown_slope(&mut self, unknown: usize, input: usize) -> Id {
         let Unknown { residual, slope, .. } = self.unknowns[unknown];
-        let by_input = self.graph.derivative(residual, SymbolId(input as u32));
+        let by = SymbolId(input as u32);
+        let by_input = match unknown {
+            0 => self.derivative_past_first(residual, by),
+            _ => self.graph.derivative(residual, by),
+        };
         let ratio = self.graph.quotient(by_input, slope);
         self.graph.negated(ratio)
     }
@@ -264,21 +288,20 @@ impl Model {
     /// The inputs that an expression is made of, by place; those of its unknowns included.
     pub fn inputs_of(&self, id: Id) -> Vec<usize> {
         let mut found = Vec::new();
-        for part in self.graph.reachable([id]) {
-            let Node::Symbol(symbol) = self.graph.node(part) else { continue };
-            let place = symbol.0 as usize;
-            match place.checked_sub(self.inputs.len()) {
-                None => found.push(place),
-                Some(unknown) => found.extend(
-                    self.graph
-                        .reachable([self.unknowns[unknown].residual])
-                        .into_iter()
-                        .filter_map(|part| match self.graph.node(part) {
-                            Node::Symbol(symbol) => Some(symbol.0 as usize),
-                            _ => None,
-                        })
-                        .filter(|place| *place < self.inputs.len()),
-                ),
+        let mut asked: Vec<usize> = Vec::new();
+        let mut roots = vec![id];
+        while let Some(root) = roots.pop() {
+            for part in self.graph.reachable([root]) {
+                let Node::Symbol(symbol) = self.graph.node(part) else { continue };
+                let place = symbol.0 as usize;
+                match place.checked_sub(self.inputs.len()) {
+                    None => found.push(place),
+                    Some(unknown) if asked.contains(&unknown) => {}
+                    Some(unknown) => {
+                        asked.push(unknown);
+                        roots.push(self.unknowns[unknown].residual);
+                    }
+                }
             }
         }
         found

@@ -369,7 +369,7 @@ fn input_table(page: &mut Document, budget: &Budget) {
                 None => "left out".to_owned(),
             };
             let stated = match (stated.as_str(), key.as_str()) {
-                ("", "head") => "asked for".to_owned(),
+                ("", "head" | "tailwater_head") => "asked for".to_owned(),
                 ("", _) => "default".to_owned(),
                 (stated, _) => stated.to_owned(),
             };
@@ -404,13 +404,25 @@ fn limit_table(page: &mut Document, budget: &Budget) {
                 format!("{} {}", limit.side.sign(), number(state.bound)),
                 number(state.margin),
                 if state.kept { "kept".to_owned() } else { "NOT KEPT".to_owned() },
-                state.fails_at.as_ref().map_or_else(|| "-".to_owned(), |heads| heads_in_words(heads)),
+                state
+                    .fails_at
+                    .as_ref()
+                    .map_or_else(|| "-".to_owned(), |heads| heads_in_words(heads)),
                 format!("{}, {}", limit.source.document, limit.confidence.words()),
             ]
         })
         .collect();
     page.table(
-        &["limit", "what it is", "#here", "#limit", "#margin", "", "heads at which it fails", "source"],
+        &[
+            "limit",
+            "what it is",
+            "#here",
+            "#limit",
+            "#margin",
+            "",
+            "heads at which it fails",
+            "source",
+        ],
         rows,
     );
 }
@@ -432,7 +444,13 @@ fn hydraulics(page: &mut Document, budget: &Budget) {
         FlowState::NotChecked => format!(
             "Modular flow is taken for granted: the file states no [tailwater]. It is modular {up_to}."
         ),
-        FlowState::Modular => format!("The flow is modular {up_to}; the tailwater head is {tailwater}."),
+        FlowState::Modular => {
+            let already =
+                factor.filter(|factor| *factor < 1.0).map_or_else(String::new, |factor| {
+                    format!(" The drowned-flow factor is {} already.", significant(factor, 4))
+                });
+            format!("The flow is modular {up_to}; the tailwater head is {tailwater}.{already}")
+        }
         FlowState::Drowned => format!(
             "The flow is DROWNED: it is modular {up_to}, and the tailwater head is {tailwater}. \
              Drowned-flow factor {}.",

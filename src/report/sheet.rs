@@ -56,9 +56,11 @@ fn regime_part(page: &mut Document, regime: &RegimeSheet, several: bool) {
     page.lines(regime.equations.iter().map(|line| format!("{} = {}", line.name, line.text)));
     page.heading("Derivatives");
     page.lines(regime.derivatives.iter().map(|line| format!("{} = {}", line.name, line.text)));
-    if regime.derivatives.iter().any(|line| line.name.starts_with("∂F")) {
+    if regime.derivatives.iter().any(|line| line.name.starts_with("dF")) {
         page.paragraph(
-            "A quantity y that is the root of F: dy/dx = -(∂F/∂x)/(∂F/∂y), dQ/dx = ∂Q/∂x + ∂Q/∂y * dy/dx, by the implicit-function theorem.",
+            "By the implicit-function theorem: for y that is the root of F, dy/dx = -(∂F/∂x)/(∂F/∂y); where \
+             a second quantity follows the discharge, dF/dQ and the lines with dQ go through it, and its own \
+             lines are at a fixed discharge.",
         );
     }
     page.heading("Limits of use and uncertainty of the coefficient");

@@ -68,11 +68,9 @@ fn read_section(
     };
     if !can_be_section(structure) {
         let title = format!("`{kind}` cannot be a section of a compound weir");
-        findings.push(
-            Diagnostic::error(Code::UnknownWord, value.span(), title).help(format!(
-                "its head is read inside it, or its law has an unknown of its own; {help}"
-            )),
-        );
+        findings.push(Diagnostic::error(Code::UnknownWord, value.span(), title).help(format!(
+            "its head is read inside it, or its law has an unknown of its own; {help}"
+        )));
         return None;
     }
     let mut installation = Installation::plain(structure);

@@ -73,7 +73,7 @@ pub(super) fn read(
     let blueprint = Blueprint {
         inputs: inputs.iter().map(model_input).collect(),
         definitions,
-        unknown,
+        unknowns: unknown.into_iter().collect(),
         result: result.clone(),
         ..Blueprint::default()
     };
@@ -88,7 +88,7 @@ pub(super) fn read(
     let known: Vec<String> = blueprint.definitions.iter().map(|(name, _)| name.clone()).collect();
     if let Some(near) = nearest(&result, known.iter().map(String::as_str))
         && !known.contains(&result)
-        && blueprint.unknown.as_ref().is_none_or(|unknown| unknown.name != result)
+        && blueprint.unknowns.iter().all(|unknown| unknown.name != result)
     {
         let span = places.result;
         findings.push(

@@ -186,8 +186,8 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
                 .help("an input of the equation is the head if it says so: h = \"head\""),
         );
     }
-    let tailwater = tailwater_section
-        .and_then(|value| read_tailwater(value, &mut kind, &mut inputs, findings));
+    let tailwater =
+        tailwater_section.and_then(|value| read_tailwater(value, &mut kind, &mut inputs, findings));
     let automatic = automatic_sources(&kind);
     let replaceable = automatic;
     let automatic: Vec<String> = replaceable.iter().map(|(name, _)| name.clone()).collect();

@@ -6,15 +6,13 @@ use super::file::{Station, observations_name};
 use super::size::Size;
 use super::source::ErrorSource;
 use super::structure::{Evidence, Kind, StationInput, mean, standard_deviation};
-use crate::diagnostic::{Code, Warning};
 use super::tailwater::Tailwater;
+use crate::diagnostic::{Code, Warning};
 use crate::model::structures::{
     AutomaticSource, Form, Installation, SecondHead, TAILWATER_HEAD, Values,
 };
 use crate::model::{Citation, Confidence, Fault, Model, Outcome};
-use crate::propagation::{
-    Action, Correlation, Distribution, Effect, Problem, Source, corrected,
-};
+use crate::propagation::{Action, Correlation, Distribution, Effect, Problem, Source, corrected};
 
 /// A station at one head.
 #[derive(Clone, Debug)]
@@ -200,11 +198,7 @@ impl Station {
 
     /// The model at indicated values. Where the tailwater follows the discharge, its level is put among
     /// them.
-    fn model(
-        &self,
-        moment: Moment,
-        inputs: &mut [f64],
-    ) -> Result<(Model, Option<Form>), Refusal> {
+    fn model(&self, moment: Moment, inputs: &mut [f64]) -> Result<(Model, Option<Form>), Refusal> {
         let installation = match &self.kind {
             Kind::Own(equation) => {
                 let model = Model::build(&equation.blueprint).map_err(Refusal::Equation)?;
@@ -222,22 +216,18 @@ impl Station {
         let rated = installation.second_head.as_ref().and_then(|second| second.rating.as_ref());
         let (Some((rating, _)), Some(place)) = (rated, place) else { return build(installation) };
         let mut installation = installation.as_ref().clone();
-        let level = match moment.tailwater {
+        inputs[place] = if let Some(level) = moment.tailwater {
             // A level that is asked about stands, whatever the rating says.
-            Some(level) => {
-                set_rating(&mut installation, None);
-                level
-            }
-            None => {
-                let (mut model, _) = build(&installation)?;
-                let level = model.expression("h_2").map_err(Refusal::Equation)?.0;
-                let level = model.evaluate(&[level], inputs).0[0];
-                let level = if level.is_nan() { 0.0 } else { level };
-                set_rating(&mut installation, Some((rating.clone(), level)));
-                level
-            }
+            set_rating(&mut installation, None);
+            level
+        } else {
+            let (mut model, _) = build(&installation)?;
+            let level = model.expression("h_2").map_err(Refusal::Equation)?.0;
+            let level = model.evaluate(&[level], inputs).0[0];
+            let level = if level.is_nan() { 0.0 } else { level };
+            set_rating(&mut installation, Some((rating.clone(), level)));
+            level
         };
-        inputs[place] = level;
         build(&installation)
     }
 
@@ -331,10 +321,11 @@ impl Station {
         }
         let stated = correlations.len();
         for each in shared {
-            let named = |index: usize| correlations[..stated].iter().any(|c| c.sources.contains(&index));
+            let named =
+                |index: usize| correlations[..stated].iter().any(|c| c.sources.contains(&index));
             // What the file says of either stands.
             if !each.sources.into_iter().any(named) {
-                correlations.push(each.clone());
+                correlations.push(*each);
             }
         }
         correlations
@@ -372,7 +363,10 @@ impl Station {
 }
 
 /// Puts another rating in the place of an installation's.
-fn set_rating(installation: &mut Installation, rating: Option<(crate::model::expression::Table, f64)>) {
+fn set_rating(
+    installation: &mut Installation,
+    rating: Option<(crate::model::expression::Table, f64)>,
+) {
     if let Some(second) = installation.second_head.take() {
         installation.second_head = Some(SecondHead { rating, ..second });
     }

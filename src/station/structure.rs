@@ -9,7 +9,7 @@ use super::quantity;
 use super::section::{Findings, Section, article};
 use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::structures::{
-    CATALOGUE, COMPOUND, Choice, GRAVITY, InputSpec, InstalledInput, Installation,
+    CATALOGUE, COMPOUND, Choice, GRAVITY, InputSpec, Installation, InstalledInput,
     KINETIC_ENERGY_COEFFICIENT, find,
 };
 use crate::units::{Dimension, Unit};
@@ -171,7 +171,12 @@ fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
 }
 
 fn unknown_kind(kind: &str, value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) {
-    report_kind(kind, value, CATALOGUE.iter().map(|each| each.kind).chain([equation::KIND]), findings);
+    report_kind(
+        kind,
+        value,
+        CATALOGUE.iter().map(|each| each.kind).chain([equation::KIND]),
+        findings,
+    );
 }
 
 /// A kind that is none of those that could stand there.

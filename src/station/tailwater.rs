@@ -9,7 +9,7 @@ use super::section::{Findings, Section, string};
 use super::structure::{StationInput, input_without_value, read_value};
 use crate::diagnostic::{Code, Diagnostic, nearest, shown};
 use crate::model::expression::Table;
-use crate::model::structures::{InstalledInput, Installation, SecondHead, TAILWATER_HEAD};
+use crate::model::structures::{Installation, SecondHead, TAILWATER_HEAD};
 use crate::units::{Dimension, Unit};
 
 /// Where the level of the tailwater comes from.
@@ -82,34 +82,27 @@ pub(super) fn read(
         section.installation.second_head =
             Some(SecondHead { drowned, modular_limit: None, rating: None });
     }
-    let before: Vec<String> = inputs.iter().map(|input| input.key.clone()).collect();
     installation.second_head = Some(SecondHead { drowned, modular_limit, rating });
-    add_inputs(installation, input, &before, inputs);
+    add_inputs(installation, &input, inputs);
     tailwater
 }
 
 /// The inputs that the second head brings, in the order of the installation.
 fn add_inputs(
     installation: &Installation,
-    tailwater: StationInput,
-    before: &[String],
+    tailwater: &StationInput,
     inputs: &mut Vec<StationInput>,
 ) {
     let mut stated = std::mem::take(inputs);
-    let due: Vec<InstalledInput> = installation.inputs();
-    for each in due {
-        let input = if each.key == TAILWATER_HEAD.key {
-            StationInput { symbol: each.symbol.clone(), ..tailwater.clone() }
-        } else {
-            match before.iter().position(|key| *key == each.key) {
-                Some(_) => {
-                    let place = stated.iter().position(|input| input.key == each.key);
-                    place.map_or_else(|| input_without_value(&each), |place| stated.remove(place))
-                }
-                None => input_without_value(&each),
+    for due in installation.inputs() {
+        let found = stated.iter().position(|input| input.key == due.key);
+        inputs.push(match found {
+            Some(place) => stated.remove(place),
+            None if due.key == TAILWATER_HEAD.key => {
+                StationInput { symbol: due.symbol, ..tailwater.clone() }
             }
-        };
-        inputs.push(input);
+            None => input_without_value(&due),
+        });
     }
 }
 
@@ -181,7 +174,8 @@ fn read_column(
     let Some((text, span)) = unit else {
         let title = "`column` needs `unit`: that of its values";
         findings.push(
-            Diagnostic::error(Code::MissingKey, value.span(), title).help("for example unit = \"mm\""),
+            Diagnostic::error(Code::MissingKey, value.span(), title)
+                .help("for example unit = \"mm\""),
         );
         return None;
     };
@@ -252,10 +246,10 @@ fn check_modular_limit(
     let is_ratio = structure.modular.highest.contains("M_L");
     if stated.is_some() && !is_ratio {
         let span = section.key_span("modular_limit").unwrap_or_else(|| section.span.clone());
-        let title = "`modular_limit` has no effect: the limit of this structure is no ratio of heads";
-        findings.push(
-            Diagnostic::error(Code::UnusedKey, span, title).help(structure.modular.words),
-        );
+        let title =
+            "`modular_limit` has no effect: the limit of this structure is no ratio of heads";
+        findings
+            .push(Diagnostic::error(Code::UnusedKey, span, title).help(structure.modular.words));
     }
     let in_choice = structure.choice.is_some_and(|c| c.symbols.iter().any(|(s, _)| *s == "M_L"));
     if stated.is_none() && is_ratio && structure.modular.ratio.is_none() && !in_choice {

@@ -3,8 +3,7 @@
 use std::fmt::Write;
 
 use crate::model::structures::{
-    COEFFICIENT_FACTOR, COMPOUND, Choice, Coefficient, GRAVITY, HEAD, InputSpec,
-    Structure,
+    COEFFICIENT_FACTOR, COMPOUND, Choice, Coefficient, GRAVITY, HEAD, InputSpec, Structure,
 };
 
 /// A commented station file for a structure of the catalogue; it reads without error as it stands, and so

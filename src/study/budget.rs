@@ -1,17 +1,19 @@
 //! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{LimitKind, TAILWATER_HEAD};
+use crate::model::structures::{Form, LimitKind, TAILWATER_HEAD};
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
 use crate::propagation::{Agreement, Coverage, Linear, Share, linear, shares};
-use crate::station::{Evidence, Kind, Moment, Refusal, Setting, Station};
+use crate::station::{Evidence, Kind, Moment, Refusal, Setting, Station, Tailwater};
 use crate::units::{Unit, significant};
 
 use super::at::{At, find_moment};
 use super::hydraulics::{Hydraulics, hydraulics};
 use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
 use super::range::{failing_heads, note_failing_heads};
-use super::warnings::{branch_warnings, freedom_warning, memory_warning, table_warnings, trial_warnings};
+use super::warnings::{
+    branch_warnings, freedom_warning, memory_warning, table_warnings, trial_warnings,
+};
 
 /// What is asked.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -254,7 +256,7 @@ pub fn budget(
             .map(|input| setting.problem.indicated[input]),
         month: question.month,
         equations: equations(&setting),
-        inputs: input_rows(station, &setting, &corrected),
+        inputs: input_rows(station, &setting, &corrected, tailwater.is_some()),
         result: result_part(station, &setting, &linear, expanded_uncertainty),
         coverage: question.coverage,
         coverage_factor,
@@ -287,28 +289,40 @@ fn equations(setting: &Setting) -> Vec<(String, String)> {
     let unknowns = model.unknowns().iter().map(|unknown| {
         (unknown.name.clone(), format!("root of 0 = {}", model.text(unknown.residual)))
     });
+    let definitions = model.definitions().iter().rev();
+    let definitions =
+        definitions.map(|each| (each.name.clone(), model.text_of_definition(each.id)));
     // The result first, then what it is made of.
-    let mut definitions: Vec<_> = model.definitions().iter().rev().collect();
-    definitions.sort_by_key(|each| each.name != model.result_name());
-    definitions
-        .into_iter()
-        .map(|each| (each.name.clone(), model.text_of_definition(each.id)))
-        .chain(unknowns)
-        .collect()
+    let mut equations: Vec<_> = definitions.chain(unknowns).collect();
+    equations.sort_by_key(|(name, _)| name != model.result_name());
+    equations
 }
 
-fn input_rows(station: &Station, setting: &Setting, corrected: &[f64]) -> Vec<InputRow> {
+fn input_rows(
+    station: &Station,
+    setting: &Setting,
+    corrected: &[f64],
+    tailwater_is_asked: bool,
+) -> Vec<InputRow> {
     let indicated = &setting.problem.indicated;
     station
         .inputs
         .iter()
         .enumerate()
         .map(|(place, input)| {
-            let left_out = input.value.is_none() && input.key != "head";
+            let of_the_moment = ["head", TAILWATER_HEAD.key].contains(&input.key.as_str());
+            let left_out = input.value.is_none() && !of_the_moment;
+            let stated = match &station.tailwater {
+                _ if input.key != TAILWATER_HEAD.key => &input.text,
+                // A level that was asked about takes the place of what the file says.
+                _ if tailwater_is_asked => "",
+                Some(Tailwater::Rating(_)) => "by its table",
+                _ => &input.text,
+            };
             InputRow {
                 key: input.key.clone(),
                 symbol: input.symbol.clone(),
-                stated: input.text.clone(),
+                stated: stated.to_owned(),
                 indicated: (!left_out).then_some(indicated[place]),
                 corrected: (!left_out).then_some(corrected[place]),
                 unit: input.dimension.to_string(),
@@ -418,9 +432,14 @@ fn rows(
     corrected: &[f64],
 ) -> Vec<BudgetRow> {
     let problem = &setting.problem;
-    let outside = limits
-        .iter()
-        .any(|limit| !limit.kept && limit.limit.kind != LimitKind::Station);
+    let drowned = setting.form.as_ref().is_some_and(Form::uses_drowned_flow);
+    let bears = |kind: LimitKind| match kind {
+        LimitKind::Use | LimitKind::Critical => true,
+        // An equation for drowned flow takes over where there is one.
+        LimitKind::Modular => !drowned,
+        LimitKind::Station => false,
+    };
+    let outside = limits.iter().any(|state| !state.kept && bears(state.limit.kind));
     let groups = problem.groups();
     linear
         .ranking()

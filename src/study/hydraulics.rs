@@ -41,12 +41,8 @@ pub(super) fn hydraulics(
 ) -> Option<Hydraulics> {
     let form = setting.form.as_ref()?;
     let modular = form.structure.modular;
-    let limit = format!(
-        "{} ({}, {})",
-        modular.words,
-        modular.source.document,
-        modular.confidence.words()
-    );
+    let limit =
+        format!("{} ({}, {})", modular.words, modular.source.document, modular.confidence.words());
     let model = &mut setting.problem.model;
     let tailwater_known = model.input(TAILWATER_HEAD.key).is_some();
     let mut value = |text: &str| {
@@ -57,8 +53,7 @@ pub(super) fn hydraulics(
     let tailwater_head = tailwater_known.then(|| value("h_2")).flatten();
     let drowned = form.uses_drowned_flow();
     let factor = drowned.then(|| value("f")).flatten();
-    let broken =
-        limits.iter().any(|state| state.limit.kind == LimitKind::Modular && !state.kept);
+    let broken = limits.iter().any(|state| state.limit.kind == LimitKind::Modular && !state.kept);
     let state = match (tailwater_known, broken, drowned) {
         (false, ..) => FlowState::NotChecked,
         (true, false, _) => FlowState::Modular,

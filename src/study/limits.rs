@@ -124,13 +124,12 @@ fn warning(state: &LimitState, form: Option<&Form>) -> Warning {
         significant(state.bound, 4),
     );
     let by = format!("in {} ({})", limit.source.document, limit.confidence.words());
-    let drowned = form.is_some_and(|form| form.uses_drowned_flow());
+    let drowned = form.is_some_and(Form::uses_drowned_flow);
     let (code, text) = match limit.kind {
         LimitKind::Use => (Code::OutsideLimits, format!("{numbers} {by}")),
-        LimitKind::Modular if drowned => (
-            Code::DrownedFlow,
-            format!("{numbers} {by}: the equation for drowned flow is used"),
-        ),
+        LimitKind::Modular if drowned => {
+            (Code::DrownedFlow, format!("{numbers} {by}: the equation for drowned flow is used"))
+        }
         LimitKind::Modular => (
             Code::NotModular,
             format!(

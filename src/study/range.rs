@@ -69,12 +69,11 @@ impl Sweep<'_> {
         let moment = Moment { head: Some(head), ..self.moment };
         let (form, inputs) = self.station.sketch(moment).ok()??;
         let known = self.compiled.iter().position(|each| each.form.regime == form.regime);
-        let index = match known {
-            Some(index) => index,
-            None => {
-                self.compiled.push(compile(form, &inputs)?);
-                self.compiled.len() - 1
-            }
+        let index = if let Some(index) = known {
+            index
+        } else {
+            self.compiled.push(compile(form, &inputs)?);
+            self.compiled.len() - 1
         };
         let Compiled { form, program } = &self.compiled[index];
         let (values, outcome) = program.evaluate(&inputs);
@@ -159,7 +158,9 @@ fn join(intervals: &mut Vec<[f64; 2]>, step: f64) {
     let mut joined: Vec<[f64; 2]> = Vec::new();
     for interval in intervals.drain(..) {
         match joined.last_mut() {
-            Some(last) if interval[0] - last[1] <= 1e-5 * step => last[1] = last[1].max(interval[1]),
+            Some(last) if interval[0] - last[1] <= 1e-5 * step => {
+                last[1] = last[1].max(interval[1]);
+            }
             _ => joined.push(interval),
         }
     }

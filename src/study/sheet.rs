@@ -2,9 +2,7 @@
 
 use serde::Serialize;
 
-use crate::model::structures::{
-    Choice, Form, InstalledInput, Installation, SecondHead, Structure,
-};
+use crate::model::structures::{Choice, Form, Installation, InstalledInput, SecondHead, Structure};
 use crate::model::{Confidence, Model};
 use crate::units::{significant, with_unit};
 
@@ -130,7 +128,12 @@ pub fn sheet(structure: &'static Structure) -> Sheet {
         drowned: drowned(&installation),
         checks: checks(&installation),
         numbers: numbers(structure),
-        tables: structure.tables.iter().map(table_sheet).chain(structure.choice.map(choice_sheet)).collect(),
+        tables: structure
+            .tables
+            .iter()
+            .map(table_sheet)
+            .chain(structure.choice.map(choice_sheet))
+            .collect(),
         velocity_of_approach: structure.velocity_of_approach.to_owned(),
     }
 }
@@ -164,7 +167,10 @@ fn drowned(installation: &Installation) -> Vec<DrownedSheet> {
             equations: each
                 .definitions
                 .iter()
-                .map(|(name, text)| EquationLine { name: (*name).to_owned(), text: (*text).to_owned() })
+                .map(|(name, text)| EquationLine {
+                    name: (*name).to_owned(),
+                    text: (*text).to_owned(),
+                })
                 .collect(),
             source: each.source.document.to_owned(),
             confidence: each.confidence.words().to_owned(),
@@ -178,7 +184,8 @@ fn checks(installation: &Installation) -> Vec<NumberLine> {
     let modular = structure.modular;
     let mut with_tailwater = installation.clone();
     let drowned = installation.drowned().first().copied();
-    with_tailwater.second_head = Some(SecondHead { drowned, modular_limit: Some(0.5), rating: None });
+    with_tailwater.second_head =
+        Some(SecondHead { drowned, modular_limit: Some(0.5), rating: None });
     let form = with_tailwater.forms().swap_remove(0);
     let critical = form
         .limits
@@ -193,7 +200,12 @@ fn checks(installation: &Installation) -> Vec<NumberLine> {
         .filter(|(name, _)| ["y_2", "E_2", "E_c"].contains(&name.as_str()))
         .map(|(name, text)| {
             let source = crate::model::source::SPECIFIC_ENERGY;
-            line(energy_meaning(name), format!("{name} = {text}"), source.document, Confidence::Seen)
+            line(
+                energy_meaning(name),
+                format!("{name} = {text}"),
+                source.document,
+                Confidence::Seen,
+            )
         });
     let position = structure.head_measured;
     let gauge = [(position.nearest, ">="), (position.farthest, "<=")].into_iter().filter_map(
@@ -209,7 +221,12 @@ fn checks(installation: &Installation) -> Vec<NumberLine> {
     } else {
         modular.words.to_owned()
     };
-    let first = line("modular flow, with [tailwater]", highest, modular.source.document, modular.confidence);
+    let first = line(
+        "modular flow, with [tailwater]",
+        highest,
+        modular.source.document,
+        modular.confidence,
+    );
     std::iter::once(first).chain(critical).chain(energies).chain(gauge).collect()
 }
 
@@ -236,24 +253,23 @@ fn line(
 }
 
 fn regime_sheet(form: &Form, mut model: Model) -> RegimeSheet {
-    let mut equations: Vec<EquationLine> = model
-        .definitions()
-        .iter()
-        .rev()
-        .map(|each| EquationLine {
-            name: each.name.clone(),
-            text: model.text_of_definition(each.id),
-        })
-        .collect();
-    // The result stands first, whatever the order of the definitions.
-    equations.sort_by_key(|each| each.name != model.result_name());
+    let mut equations: Vec<EquationLine> = Vec::new();
+    let several = model.unknowns().len() > 1;
     for unknown in model.unknowns() {
+        let residual = residual_name(&unknown.name, several);
+        let from = model.text(unknown.lower);
         equations.push(EquationLine {
             name: unknown.name.clone(),
-            text: format!("the smallest root above {} of F = 0", model.text(unknown.lower)),
+            text: format!("the smallest root above {from} of {residual} = 0"),
         });
-        equations.push(EquationLine { name: "F".to_owned(), text: model.text(unknown.residual) });
+        equations.push(EquationLine { name: residual, text: model.text(unknown.residual) });
     }
+    equations.extend(model.definitions().iter().rev().map(|each| EquationLine {
+        name: each.name.clone(),
+        text: model.text_of_definition(each.id),
+    }));
+    // The result stands first, and what makes it; then the definitions.
+    equations.sort_by_key(|each| each.name != model.result_name());
     let limits = form
         .limits
         .iter()
@@ -263,7 +279,12 @@ fn regime_sheet(form: &Form, mut model: Model) -> RegimeSheet {
                 .map_or_else(|_| "1".to_owned(), |(_, dimension)| dimension.to_string());
             // A bound in symbols has its unit from them.
             let unit = if limit.bound.parse::<f64>().is_ok() { unit.as_str() } else { "1" };
-            let bound = format!("{} {} {}", limit.quantity, limit.side.sign(), with_unit(&*limit.bound, unit));
+            let bound = format!(
+                "{} {} {}",
+                limit.quantity,
+                limit.side.sign(),
+                with_unit(&*limit.bound, unit)
+            );
             line(limit.meaning.clone(), bound, limit.source.document, limit.confidence)
         })
         .collect();
@@ -303,29 +324,36 @@ fn derivatives(model: &mut Model) -> Vec<DerivativeLine> {
             });
         }
     }
+    let several = model.unknowns().len() > 1;
     for (index, unknown) in model.unknowns().to_vec().into_iter().enumerate() {
+        let residual = residual_name(&unknown.name, several);
         let by_unknown = model.partial_derivative(result, unknown.symbol);
+        if unknown.name != name {
+            lines.push(DerivativeLine {
+                name: format!("∂{name}/∂{}", unknown.name),
+                text: model.text(by_unknown),
+            });
+        }
         lines.push(DerivativeLine {
-            name: format!("∂{name}/∂{}", unknown.name),
-            text: model.text(by_unknown),
-        });
-        lines.push(DerivativeLine {
-            name: format!("∂F/∂{}", unknown.name),
+            name: format!("d{residual}/d{}", unknown.name),
             text: model.text(unknown.slope),
         });
         for (input, symbol) in symbols.iter().enumerate() {
             let slope = model.unknown_slope(index, input);
             if !model.graph().is_zero(slope) {
-                let by = crate::model::expression::SymbolId(input as u32);
-                let of_residual = model.partial_derivative(unknown.residual, by);
                 lines.push(DerivativeLine {
                     name: format!("d{}/d{symbol}", unknown.name),
-                    text: format!("-({})/(∂F/∂{})", model.text(of_residual), unknown.name),
+                    text: model.text(slope),
                 });
             }
         }
     }
     lines
+}
+
+/// What an unknown is the root of.
+fn residual_name(unknown: &str, several: bool) -> String {
+    if several { format!("F_{unknown}") } else { "F".to_owned() }
 }
 
 fn numbers(structure: &'static Structure) -> Vec<NumberLine> {

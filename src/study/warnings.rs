@@ -74,11 +74,13 @@ pub(super) fn branch_warnings(setting: &Setting) -> Vec<Warning> {
     });
     near.map(|(branch, distance)| {
         let model = &problem.model;
+        let mut sides = [branch.left, branch.right];
+        // A number stands on the right.
+        sides.sort_by_key(|side| model.inputs_of(*side).is_empty());
+        let [left, right] = sides.map(|side| model.text(side));
         let text = format!(
-            "the equation branches at {} = {}, {} standard uncertainties from here, and the linear method \
-             follows one branch only",
-            model.text(branch.left),
-            model.text(branch.right),
+            "the equation branches at {left} = {right}, {} standard uncertainties from here, and the linear \
+             method follows one branch only",
             significant(distance.value.abs() / distance.standard_uncertainty, 2)
         );
         Warning::new(Code::NearBranch, text)

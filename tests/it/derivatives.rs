@@ -61,9 +61,11 @@ fn model(point: &Value) -> (Model, Vec<String>, Vec<f64>) {
     for key in point["inputs"].as_object().unwrap().keys() {
         assert!(keys.contains(key), "{} has no input {key}", point["kind"]);
     }
-    let given = Values::new(inputs.iter().map(|input| {
-        (input.key.clone(), stated(&input.key).or(input.spec.default_value()))
-    }));
+    let given = Values::new(
+        inputs
+            .iter()
+            .map(|input| (input.key.clone(), stated(&input.key).or(input.spec.default_value()))),
+    );
     let form = installed.form(&given);
     if let Some(regime) = point["regime"].as_str() {
         assert_eq!(form.regime, regime);

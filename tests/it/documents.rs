@@ -68,3 +68,10 @@ fn station_files_in_the_documents_read_without_error() {
     }
     assert!(count >= 2, "only {count} blocks");
 }
+
+#[test]
+fn the_worked_example_of_the_guide_is_the_one_that_is_compiled() {
+    let guide = std::fs::read_to_string("DEVELOPERS.md").unwrap();
+    let example = std::fs::read_to_string("tests/data/structures/worked_example.rs").unwrap();
+    assert!(guide.contains(&example));
+}

@@ -70,7 +70,7 @@ fn the_suggestions_of_a_new_file_read_as_well() {
         let suggested: String = template(structure)
             .lines()
             .map(|line| match line.strip_prefix("# ") {
-                Some(rest) if is_key(rest) || rest.starts_with("[[") => format!("{rest}\n"),
+                Some(rest) if is_key(rest) || rest.starts_with('[') => format!("{rest}\n"),
                 _ => format!("{line}\n"),
             })
             .collect();

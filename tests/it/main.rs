@@ -7,11 +7,14 @@
 
 mod bad_files;
 mod budgets;
+mod case;
 mod cli;
 mod derivatives;
 mod documents;
 mod examples;
+mod hydraulics;
 mod layering;
+mod limiting_cases;
 mod metrology;
 mod properties;
 mod published;

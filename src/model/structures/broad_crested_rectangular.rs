@@ -40,6 +40,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[("C", "C_table(h/p, h/L)"), ("Fr", "Q/((h + p)*b*sqrt(g*(h + p)))")],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C*b*h^1.5",
         implicit: Implicit::Nothing,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],
@@ -47,7 +48,8 @@ pub(super) static STRUCTURE: Structure = Structure {
             Limit::at_least("h", "0.06", "head").by(ISO_3846, Confidence::Seen),
             Limit::at_least("b", "0.30", "crest width").by(ISO_3846, Confidence::Memory),
             Limit::at_least("p", "0.15", "crest height").by(ISO_3846, Confidence::Memory),
-            Limit::at_least("h/L", "0.1", "head over crest length").by(ISO_3846, Confidence::Memory),
+            Limit::at_least("h/L", "0.1", "head over crest length")
+                .by(ISO_3846, Confidence::Memory),
             Limit::at_most("h/L", "1.6", "head over crest length").by(ISO_3846, Confidence::Memory),
             Limit::at_most("h/p", "1.6", "head over crest height").by(ISO_3846, Confidence::Memory),
             Limit::at_least("L/p", "0.1", "crest length over crest height")

@@ -1,9 +1,7 @@
 //! Broad-crested weir with a rounded nose and a horizontal crest; the coefficient follows from the
 //! boundary layer on the crest.
 
-use super::approach::{
-    APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT,
-};
+use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT};
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
@@ -54,12 +52,14 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h - x_delta*L",
         beyond: None,
         borders: &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(ISO_4374, Confidence::Memory),
-            Limit::at_least("h/L", "0.05", "head over crest length").by(ISO_4374, Confidence::Memory),
+            Limit::at_least("h/L", "0.05", "head over crest length")
+                .by(ISO_4374, Confidence::Memory),
             Limit::at_least("p", "0.15", "crest height").by(ISO_4374, Confidence::Memory),
             Limit::at_most("h/p", "1.5", "head over crest height").by(ISO_4374, Confidence::Memory),
             Limit::at_least("b", "0.30", "crest width").by(ISO_4374, Confidence::Memory),

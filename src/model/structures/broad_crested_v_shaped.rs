@@ -1,9 +1,7 @@
 //! Broad-crested weir of V-shaped section: critical flow in a triangle, or in a triangle between vertical
 //! walls.
 
-use super::approach::{
-    APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT,
-};
+use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT};
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
@@ -29,7 +27,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             domain_reason: "a V-shaped crest has 90 to 150 degrees",
             example: "120 deg",
         },
-        InputSpec::length("v_depth", "H_b", "height of the vertical walls' foot above the vertex", "0.30 m"),
+        InputSpec::length(
+            "v_depth",
+            "H_b",
+            "height of the vertical walls' foot above the vertex",
+            "0.30 m",
+        ),
         InputSpec::length("crest_height", "p", "height of the vertex above the bed", "0.30 m"),
         InputSpec::length(
             "crest_length_along_flow",
@@ -62,12 +65,14 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "F_C*C_D*Q_ideal",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h",
         beyond: Some("max(0.1 - H/L, H/L - 1)"),
         borders: &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(ISO_8333, Confidence::Memory),
-            Limit::at_least("h/L", "0.05", "head over crest length").by(ISO_8333, Confidence::Memory),
+            Limit::at_least("h/L", "0.05", "head over crest length")
+                .by(ISO_8333, Confidence::Memory),
             Limit::at_least("p", "0.15", "height of the vertex").by(ISO_8333, Confidence::Memory),
             Limit::at_least("theta", "pi/2", "full angle of the V, in rad (90 deg)")
                 .by(ISO_8333, Confidence::Memory),

@@ -17,6 +17,7 @@ use super::input::{
 use super::installation::{Installation, Section};
 use super::structure::{Implicit, Regime, Structure};
 use crate::model::{Blueprint, UnknownText};
+use crate::units::Dimension;
 
 /// The level of a section's crest above the lowest crest.
 pub const CREST_LEVEL: InputSpec = InputSpec {
@@ -29,13 +30,13 @@ pub const CREST_LEVEL: InputSpec = InputSpec {
 /// compound weir itself.
 const ALONE: [&str; 3] = ["compound", "end-depth", "parshall-flume"];
 
-/// Whether a structure can be a section: its head is read in the common approach, and its law follows
-/// from head and total head without an unknown of its own.
+/// Whether a structure can be a section: its head is read in the common approach.
 pub fn can_be_section(structure: &Structure) -> bool {
-    let solved = |regime: &Regime| matches!(regime.implicit, Implicit::Quantity { .. });
-    !ALONE.contains(&structure.kind) && !structure.regimes.iter().any(solved)
+    !ALONE.contains(&structure.kind)
 }
 
+/// The head that stands in for that of a dry section.
+const LEAST_HEAD: &str = "h_least";
 /// Names that all sections share.
 const SHARED: [&str; 2] = ["g", "alpha"];
 /// Definitions of a section that the shared approach takes the place of.
@@ -61,11 +62,14 @@ fn names_in_use(structure: &'static Structure) -> BTreeSet<&'static str> {
     for regime in structure.regimes {
         let kept = kept_definitions(regime).into_iter().map(|(_, text)| text);
         used.extend(kept.chain([regime.discharge]).flat_map(identifiers));
+        used.extend(regime.solved.iter().flat_map(|solved| identifiers(solved.equation)));
         if let super::published::Coefficient::Published(rule) = regime.coefficient {
             used.extend(identifiers(rule.percent));
         }
     }
-    used.extend(structure.adjustments.iter().flat_map(|each| identifiers(each.standard_uncertainty)));
+    used.extend(
+        structure.adjustments.iter().flat_map(|each| identifiers(each.standard_uncertainty)),
+    );
     // Limits that need the crest's height above the bed have it from the whole.
     used.insert("p");
     used
@@ -141,7 +145,8 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
     let mut result = Form {
         structure,
         regime: String::new(),
-        when: "every section passes what its own equation gives at the head above its crest".to_owned(),
+        when: "every section passes what its own equation gives at the head above its crest"
+            .to_owned(),
         blueprint,
         limits: whole.limits.iter().map(Into::into).collect(),
         automatic: Vec::new(),
@@ -159,13 +164,16 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
     }
     result.regime = format!("sections {}", regimes.join("; "));
     let sum: Vec<String> = (1..=installation.sections.len()).map(|n| numbered("Q", n)).collect();
-    result.blueprint.unknown = Some(UnknownText {
+    let discharge = UnknownText {
         name: "Q".to_owned(),
         equation: format!("Q = {}", sum.join(" + ")),
         from: "0".to_owned(),
         to: LARGEST_FLOW.to_owned(),
-    });
-    result.blueprint.flowing = flowing.into_iter().reduce(|all, next| format!("max({all}, {next})"));
+    };
+    // The discharge comes first: what the sections solve for follows it.
+    result.blueprint.unknowns.insert(0, discharge);
+    result.blueprint.flowing =
+        flowing.into_iter().reduce(|all, next| format!("max({all}, {next})"));
     result.blueprint.beyond = beyond.into_iter().reduce(|all, next| format!("{all} + {next}"));
     result
 }
@@ -189,8 +197,7 @@ fn add_section(
     let regime = &structure.regimes[(structure.regime_for)(&section_values(values, number))];
     let drowned = drowned_flow(installation);
     let inputs = inputs(section, number);
-    let mut own: BTreeSet<String> =
-        ["Q", "h", "h_2"].into_iter().map(str::to_owned).collect();
+    let mut own: BTreeSet<String> = ["Q", "h", "h_2"].into_iter().map(str::to_owned).collect();
     own.extend(inputs.iter().map(|input| input.spec.symbol.to_owned()));
     let constants = constants(installation);
     own.extend(constants.iter().map(|(symbol, ..)| symbol.clone()));
@@ -202,6 +209,7 @@ fn add_section(
     if regime.implicit == Implicit::Discharge {
         own.insert("H".to_owned());
     }
+    own.extend(regime.solved.map(|solved| solved.name.to_owned()));
     if has_height {
         own.insert("p".to_owned());
     }
@@ -221,20 +229,33 @@ fn add_section(
     }
     texts.extend(definitions.iter().chain(factor).map(|(left, right)| (name(left), name(right))));
     let flowing = name(regime.flowing);
+    if let Some(solved) = regime.solved {
+        // A dry section has no such quantity; a hair of water in its place keeps every slope a number.
+        let wet = numbered("H_wet", number);
+        texts.push((wet.clone(), format!("max({}, {LEAST_HEAD})", name("H"))));
+        let of_wet = |text: &str| name(text).replace(&name("H"), &wet);
+        to.blueprint.unknowns.push(UnknownText {
+            name: name(solved.name),
+            equation: of_wet(solved.equation),
+            from: of_wet(solved.from),
+            to: of_wet(solved.to),
+        });
+        let least = (LEAST_HEAD.to_owned(), 1e-3, Dimension::LENGTH);
+        if !to.blueprint.constants.contains(&least) {
+            to.blueprint.constants.push(least);
+        }
+    }
+    let texts = &mut to.blueprint.definitions;
     let discharge = format!("({}) when {flowing} > 0 otherwise 0", name(regime.discharge));
     texts.push((name("Q"), discharge));
     let blueprint = &mut to.blueprint;
     blueprint.constants.extend(constants.into_iter().map(|(s, value, d)| (name(&s), value, d)));
-    blueprint.tables.extend(
-        structure
-            .tables
-            .iter()
-            .filter_map(|table| table.in_si())
-            .map(|(table, dimension)| {
-                let numbered = name(table.name());
-                (table.renamed(numbered), dimension)
-            }),
-    );
+    blueprint.tables.extend(structure.tables.iter().filter_map(super::PublishedTable::in_si).map(
+        |(table, dimension)| {
+            let numbered = name(table.name());
+            (table.renamed(numbered), dimension)
+        },
+    ));
     add_limits(structure, regime, &name, (number, &flowing), &own, whole.second_head.is_some(), to);
     let mut sources = Form { automatic: Vec::new(), unstated: Vec::new(), ..to.clone() };
     add_sources(structure, regime, drowned, &mut sources);

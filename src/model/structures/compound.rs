@@ -6,8 +6,8 @@ use super::installation::{Installation, Section};
 use super::published::{Coefficient, HeadPosition, ModularLimit};
 use super::structure::{Implicit, Regime, Structure};
 use super::{InputSpec, KINETIC_ENERGY_COEFFICIENT, triangular_profile};
-use crate::model::source::{ISO_14139, PRACTICE};
 use crate::model::Confidence;
+use crate::model::source::{ISO_14139, PRACTICE};
 
 /// Its name in a station file.
 pub const KIND: &str = "compound";
@@ -18,7 +18,12 @@ pub(super) static STRUCTURE: Structure = Structure {
     standard: ISO_14139,
     inputs: &[
         APPROACH_WIDTH,
-        InputSpec::length("crest_height", "p", "height of the lowest crest above the bed", "0.40 m"),
+        InputSpec::length(
+            "crest_height",
+            "p",
+            "height of the lowest crest above the bed",
+            "0.40 m",
+        ),
         KINETIC_ENERGY_COEFFICIENT,
     ],
     choice: None,
@@ -30,6 +35,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[FROUDE],
         discharge: "0",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],

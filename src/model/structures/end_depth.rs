@@ -29,6 +29,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[],
         discharge: "F_C*C*b*sqrt(g)*h^1.5",
         implicit: Implicit::Nothing,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],

@@ -13,7 +13,12 @@ pub(super) static STRUCTURE: Structure = Structure {
     title: "Flat-V weir, slopes 1:2 and 1:5 along the flow",
     standard: ISO_4377,
     inputs: &[
-        InputSpec::length("crest_width", "b", "width of the crest between its vertical walls", "4.00 m"),
+        InputSpec::length(
+            "crest_width",
+            "b",
+            "width of the crest between its vertical walls",
+            "4.00 m",
+        ),
         InputSpec::number(
             "cross_slope",
             "n",
@@ -22,7 +27,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             "a flat V falls 1 in 10 to 1 in 40 towards its middle",
             "20",
         ),
-        InputSpec::length("crest_height", "p", "height of the lowest point of the crest above the bed", "0.40 m"),
+        InputSpec::length(
+            "crest_height",
+            "p",
+            "height of the lowest point of the crest above the bed",
+            "0.40 m",
+        ),
         InputSpec { example: "4.00 m", ..APPROACH_WIDTH },
         KINETIC_ENERGY_COEFFICIENT,
     ],
@@ -64,12 +74,32 @@ pub(super) static STRUCTURE: Structure = Structure {
         regime(
             "inside the V",
             "the head is at most the depth of the V, b/(2 n)",
-            &[("C_D", "C_inside(min(n, 40))"), K_H, H_E, Z, MODULAR, RECTANGULAR, TOTAL_HEAD, C_V, FROUDE],
+            &[
+                ("C_D", "C_inside(min(n, 40))"),
+                K_H,
+                H_E,
+                Z,
+                MODULAR,
+                RECTANGULAR,
+                TOTAL_HEAD,
+                C_V,
+                FROUDE,
+            ],
         ),
         regime(
             "above the V",
             "the head is above the depth of the V, b/(2 n)",
-            &[("C_D", "C_above(min(n, 40))"), K_H, H_E, Z, MODULAR, RECTANGULAR, TOTAL_HEAD, C_V, FROUDE],
+            &[
+                ("C_D", "C_above(min(n, 40))"),
+                K_H,
+                H_E,
+                Z,
+                MODULAR,
+                RECTANGULAR,
+                TOTAL_HEAD,
+                C_V,
+                FROUDE,
+            ],
         ),
     ],
     regime_for: |values: &Values| {
@@ -137,8 +167,7 @@ const LIMITS: &[Limit] = &[
     Limit::at_most("n", "40", "cross-slope").by(ISO_4377, Confidence::Memory),
     Limit::at_most("b/(2*n*p)", "2.5", "depth of the V over crest height")
         .by(ISO_4377, Confidence::Doubtful),
-    Limit::at_most("H/p", "2.5", "total head over crest height")
-        .by(ISO_4377, Confidence::Doubtful),
+    Limit::at_most("H/p", "2.5", "total head over crest height").by(ISO_4377, Confidence::Doubtful),
     Limit::at_least("b/h", "2", "crest width over head").by(ISO_4377, Confidence::Memory),
     froude_at_most("0.6").by(ISO_4377, Confidence::Doubtful),
 ];
@@ -154,6 +183,7 @@ const fn regime(
         definitions,
         discharge: "f*Q_modular",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h - k_h",
         beyond: None,
         borders: &["h - b/(2*n)"],

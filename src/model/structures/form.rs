@@ -1,9 +1,9 @@
 //! The equation of an installation at some values, with everything that goes with it.
 
-use super::installation::{Installation, SHIFTED_TAILWATER};
 use super::input::{COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR};
-use super::published::{Coefficient, CoefficientRule, CriticalFlow, DrownedFlow};
-use super::structure::{Implicit, Regime, Structure};
+use super::installation::{Installation, SHIFTED_TAILWATER};
+use super::published::{Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, PublishedTable};
+use super::structure::{Implicit, Regime, Solved, Structure};
 use crate::model::{Blueprint, Citation, Confidence, Limit, Side, UnknownText};
 use crate::units::Dimension;
 
@@ -127,9 +127,9 @@ pub(super) fn single(installation: &Installation, regime: usize) -> Form {
     let mut blueprint = Blueprint {
         inputs: installation.inputs().iter().map(Into::into).collect(),
         constants: constants(installation),
-        tables: structure.tables.iter().filter_map(|table| table.in_si()).collect(),
+        tables: structure.tables.iter().filter_map(PublishedTable::in_si).collect(),
         definitions: Vec::new(),
-        unknown: None,
+        unknowns: Vec::new(),
         result: "Q".to_owned(),
         flowing: Some(form.flowing.to_owned()),
         beyond: beyond(form.beyond, drowned.and_then(|drowned| drowned.beyond)),
@@ -193,7 +193,7 @@ pub(super) fn constants(installation: &Installation) -> Vec<(String, f64, Dimens
     let of_option = of_option
         .into_iter()
         // What is not published does not enter; that an equation needs it is asked beforehand.
-        .filter(|(symbol, value)| !value.is_nan() && !(*symbol == "M_L" && modular_limit.is_some()))
+        .filter(|(symbol, value)| !(value.is_nan() || *symbol == "M_L" && modular_limit.is_some()))
         .map(|(symbol, value)| (symbol, value, Dimension::NONE));
     own.chain(of_option)
         .chain(modular_limit.map(|ratio| ("M_L", ratio, Dimension::NONE)))
@@ -222,21 +222,20 @@ fn solve(form: &Regime, through_tailwater: bool, blueprint: &mut Blueprint) {
         Implicit::Discharge => Some(super::approach::LARGEST_FLOW.to_owned()),
         // Drowned flow is never above modular flow; a hair of room for the rounding of the two.
         Implicit::Nothing if through_tailwater => Some("1.000001*Q_modular".to_owned()),
-        Implicit::Nothing | Implicit::Quantity { .. } => None,
+        Implicit::Nothing => None,
     };
-    if let Some(to) = largest {
-        blueprint.unknown = Some(UnknownText {
+    match largest {
+        Some(to) => blueprint.unknowns.push(UnknownText {
             name: "Q".to_owned(),
             equation: format!("Q = {}", form.discharge),
             from: "0".to_owned(),
             to,
-        });
-        return;
+        }),
+        None => blueprint.definitions.push(("Q".to_owned(), form.discharge.to_owned())),
     }
-    blueprint.definitions.push(("Q".to_owned(), form.discharge.to_owned()));
-    if let Implicit::Quantity { name, equation, from, to } = form.implicit {
+    if let Some(Solved { name, equation, from, to }) = form.solved {
         let [name, equation, from, to] = [name, equation, from, to].map(str::to_owned);
-        blueprint.unknown = Some(UnknownText { name, equation, from, to });
+        blueprint.unknowns.push(UnknownText { name, equation, from, to });
     }
 }
 

@@ -141,11 +141,13 @@ impl InputSpec {
     }
 
     /// The same input with a value where the file gives none.
+    #[must_use]
     pub const fn or(self, default: f64) -> Self {
         Self { default: Some(default), ..self }
     }
 
     /// The same input, which a file may leave out.
+    #[must_use]
     pub const fn optional(self) -> Self {
         self.or(f64::NAN)
     }

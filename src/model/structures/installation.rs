@@ -85,7 +85,7 @@ impl Installation {
         if let Some(second) = &self.second_head {
             let mut tailwater = InstalledInput::from(TAILWATER_HEAD);
             if second.rating.is_some() {
-                tailwater.symbol = SHIFTED_TAILWATER.to_owned();
+                SHIFTED_TAILWATER.clone_into(&mut tailwater.symbol);
             }
             inputs.push(tailwater);
             if self.sections.is_empty() && second.drowned.is_some() {

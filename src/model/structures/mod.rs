@@ -25,7 +25,7 @@ pub use published::{
     Adjustment, Choice, Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow,
     HeadPosition, ModularLimit, PublishedTable,
 };
-pub use structure::{Implicit, Regime, Structure};
+pub use structure::{Implicit, Regime, Solved, Structure};
 
 /// Declares the module of each structure and lists them all.
 macro_rules! catalogue {
@@ -64,3 +64,7 @@ pub fn find(kind: &str) -> Option<&'static Structure> {
 
 #[cfg(test)]
 mod tests;
+/// The structure that the contributor's guide adds; a test compares the two.
+#[cfg(test)]
+#[path = "../../../tests/data/structures/worked_example.rs"]
+mod worked_example;

@@ -68,12 +68,15 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[("Q_modular", "F_C*C*m3_per_s*(h/metre)^n")],
         discharge: "f*Q_modular",
         implicit: Implicit::Nothing,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],
         limits: &[
-            Limit::at_least("h", "h_lowest", "head, for this size").by(ISO_9826, Confidence::Memory),
-            Limit::at_most("h", "h_highest", "head, for this size").by(ISO_9826, Confidence::Memory),
+            Limit::at_least("h", "h_lowest", "head, for this size")
+                .by(ISO_9826, Confidence::Memory),
+            Limit::at_most("h", "h_highest", "head, for this size")
+                .by(ISO_9826, Confidence::Memory),
         ],
         coefficient: Coefficient::Published(CoefficientRule {
             words: "at 95 %: 3 % for 1 ft to 8 ft and 0.30 m to 2.40 m; 3 % to 5 % for others, 5 % taken",

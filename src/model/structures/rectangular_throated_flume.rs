@@ -44,6 +44,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h - x_delta*L",
         beyond: None,
         borders: &[],

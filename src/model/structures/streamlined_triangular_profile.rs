@@ -35,6 +35,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT, FROUDE],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],

@@ -56,6 +56,8 @@ pub struct Regime {
     pub discharge: &'static str,
     /// What stands on both sides of the equation, if anything does.
     pub implicit: Implicit,
+    /// A quantity that only an equation gives, which may depend on the discharge: critical depth, say.
+    pub solved: Option<Solved>,
     /// Positive where water flows over the crest.
     pub flowing: &'static str,
     /// Positive where a published curve is left; its end is then held.
@@ -69,22 +71,24 @@ pub struct Regime {
     pub coefficient: Coefficient,
 }
 
-/// What an equation gives only by an equation that it must satisfy.
+/// What stands on both sides of an equation.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]
 pub enum Implicit {
     /// Nothing.
     Nothing,
     /// The discharge, through the total head `H` of the approach.
     Discharge,
-    /// Another quantity.
-    Quantity {
-        /// Its symbol.
-        name: &'static str,
-        /// The equation.
-        equation: &'static str,
-        /// Its smallest value; the root nearest above is meant.
-        from: &'static str,
-        /// Its largest value.
-        to: &'static str,
-    },
+}
+
+/// A quantity that only an equation gives.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub struct Solved {
+    /// Its symbol.
+    pub name: &'static str,
+    /// The equation.
+    pub equation: &'static str,
+    /// Its smallest value; the root nearest above is meant.
+    pub from: &'static str,
+    /// Its largest value.
+    pub to: &'static str,
 }

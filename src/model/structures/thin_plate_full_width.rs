@@ -58,6 +58,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "f*Q_modular",
         implicit: Implicit::Nothing,
+        solved: None,
         flowing: "h + k_h_published + dk_h",
         beyond: None,
         borders: &[],
@@ -66,8 +67,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             Limit::at_most("h", "0.75", "head").by(ISO_1438, Confidence::Memory),
             Limit::at_least("b", "0.30", "crest width").by(ISO_1438, Confidence::Memory),
             Limit::at_least("p", "0.10", "crest height").by(ISO_1438, Confidence::Memory),
-            Limit::at_most("h/p", "1", "head over crest height (edition of 1980; later ones are wider)")
-                .by(ISO_1438, Confidence::Memory),
+            Limit::at_most(
+                "h/p",
+                "1",
+                "head over crest height (edition of 1980; later ones are wider)",
+            )
+            .by(ISO_1438, Confidence::Memory),
         ],
         coefficient: Coefficient::Published(CoefficientRule {
             words: "at 95 %: 1.5 % for h/p up to 1.0, 2 % up to 1.5, 3 % up to 2.5",
@@ -116,7 +121,7 @@ const VILLEMONTE_FACTOR: (&str, &str) = ("f_Villemonte", "(1 - (h_2/h)^1.5)^0.38
 const FACTOR: (&str, &str) =
     ("f", "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published");
 
-/// One of the two factors; that they differ, by 4 % at h_2/h = 0.5 and 13 % at 0.8, is the uncertainty of
+/// One of the two factors; that they differ, by 4 % at a ratio of heads of 0.5 and 13 % at 0.8, is the uncertainty of
 /// each.
 const fn drowned(
     name: &'static str,

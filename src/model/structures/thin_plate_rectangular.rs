@@ -98,6 +98,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             ],
             discharge: "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5",
             implicit: Implicit::Nothing,
+            solved: None,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
             borders: &[],
@@ -124,6 +125,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             ],
             discharge: "2/3*sqrt(2*g)*F_C*C_e*b_e*h_e^1.5",
             implicit: Implicit::Nothing,
+            solved: None,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
             borders: &[],
@@ -168,7 +170,8 @@ pub(super) static STRUCTURE: Structure = Structure {
 };
 
 const MIN_HEAD: Limit = Limit::at_least("h", "0.03", "head").by(ISO_1438, Confidence::Memory);
-const MIN_WIDTH: Limit = Limit::at_least("b", "0.15", "crest width").by(ISO_1438, Confidence::Memory);
+const MIN_WIDTH: Limit =
+    Limit::at_least("b", "0.15", "crest width").by(ISO_1438, Confidence::Memory);
 const MIN_HEIGHT: Limit =
     Limit::at_least("p", "0.10", "crest height").by(ISO_1438, Confidence::Memory);
 const MAX_RATIO: Limit =

@@ -2,8 +2,8 @@
 
 use super::approach::{APPROACH_SIDE_SLOPE, APPROACH_WIDTH, MEAN_WIDTH};
 use super::{
-    Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec, ModularLimit, Regime,
-    Structure,
+    Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec, ModularLimit,
+    Regime, Structure,
 };
 use crate::model::source::{BOS, USBR_MANUAL};
 use crate::model::{Confidence, Limit};
@@ -36,6 +36,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[MEAN_WIDTH],
         discharge: "F_C*C_published*b*h^1.5",
         implicit: Implicit::Nothing,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],
@@ -46,8 +47,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             Limit::at_most("h/p", "0.5", "head over crest height").by(BOS, Confidence::Memory),
             Limit::at_least("(B_m - b)/2", "0.30", "distance from the crest to the bank")
                 .by(BOS, Confidence::Memory),
-            Limit::at_least("(B_m - b)/(2*h)", "2", "distance from the crest to the bank over head")
-                .by(BOS, Confidence::Memory),
+            Limit::at_least(
+                "(B_m - b)/(2*h)",
+                "2",
+                "distance from the crest to the bank over head",
+            )
+            .by(BOS, Confidence::Memory),
             Limit::at_most("h/b", "1/3", "head over crest width, for the stated accuracy")
                 .by(USBR_MANUAL, Confidence::Seen),
         ],

@@ -60,6 +60,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "F_C*C_q*b*sqrt(2*g)*H^1.5",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h",
         beyond: None,
         borders: &[],

@@ -10,7 +10,8 @@ use crate::model::source::ISO_4359;
 use crate::model::{Confidence, Limit};
 
 const SLOPES: [f64; 2] = [0.0, 20.0];
-const SLOPE_REASON: &str = "it is horizontal per vertical: 0 is a vertical wall, 20 a very flat bank";
+const SLOPE_REASON: &str =
+    "it is horizontal per vertical: 0 is a vertical wall, 20 a very flat bank";
 
 pub(super) static STRUCTURE: Structure = Structure {
     kind: "trapezoidal-throated-flume",
@@ -72,6 +73,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "F_C*C_D*sqrt(g*A_c^3/W_c)",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h - x_delta*L",
         beyond: None,
         borders: &[],

@@ -55,6 +55,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         ],
         discharge: "f*Q_modular",
         implicit: Implicit::Discharge,
+        solved: None,
         flowing: "h - k_h_published",
         beyond: None,
         borders: &[],
@@ -93,8 +94,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             ],
             needs: &[],
             beyond: Some("h_2/H - 0.985"),
-            limits: &[Limit::at_most("h_2/H", "0.985", "tailwater head over total head, end of the curve")
-                .by(ISO_4360, Confidence::MemoryConfirmed)],
+            limits: &[Limit::at_most(
+                "h_2/H",
+                "0.985",
+                "tailwater head over total head, end of the curve",
+            )
+            .by(ISO_4360, Confidence::MemoryConfirmed)],
             ratio: None,
             uncertainty: None,
             source: ISO_4360,

@@ -1,11 +1,12 @@
 //! Long-throated flume with a U-shaped throat: exact critical flow, the critical depth an unknown.
 
 use super::approach::{
-    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, TOP_WIDTH, TRAPEZOIDAL,
+    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, TOP_WIDTH, TOTAL_HEAD, TRAPEZOIDAL,
     VELOCITY_COEFFICIENT,
 };
 use super::{
-    CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Structure, throat,
+    CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Solved, Structure,
+    throat,
 };
 use crate::model::source::ISO_4359;
 use crate::model::{Confidence, Limit};
@@ -50,19 +51,19 @@ pub(super) static STRUCTURE: Structure = Structure {
                 "D^2/8*(theta - sin(theta)) when y_c <= D/2 otherwise pi*D^2/8 + D*(y_c - D/2)",
             ),
             ("W_c", "D*sin(theta/2) when y_c <= D/2 otherwise D"),
-            ("H", "y_c + A_c/(2*W_c)"),
+            TOTAL_HEAD,
             VELOCITY_COEFFICIENT,
             FROUDE_TRAPEZOIDAL,
         ],
         discharge: "F_C*C_D*sqrt(g*A_c^3/W_c)",
-        // Critical depth is between 2/3 of the total head (rectangle) and 3/4 (circle), and the total
-        // head between h and 1.5 h.
-        implicit: Implicit::Quantity {
+        implicit: Implicit::Discharge,
+        // Critical depth is between 2/3 of the total head (rectangle) and 3/4 (deep in the circle).
+        solved: Some(Solved {
             name: "y_c",
-            equation: "H = h + alpha*Q^2/(2*g*A^2)",
-            from: "2/3*h",
-            to: "1.2*h",
-        },
+            equation: "H = y_c + A_c/(2*W_c)",
+            from: "0.66*H",
+            to: "0.76*H",
+        }),
         flowing: "h - x_delta*L",
         beyond: None,
         borders: &[],

@@ -532,8 +532,8 @@ CASES = [  # kind, regime, points, (a), (b)
         partial(triangular_by_hand, contraction="partial"),
         partial(triangular, contraction="partial"),
     ),
-    ("rectangular-throated-flume", "modular", flume_point, flume_by_hand, flume),
-    ("triangular-profile", "modular", profile_point, profile_by_hand, profile),
+    ("rectangular-throated-flume", "free", flume_point, flume_by_hand, flume),
+    ("triangular-profile", "1:2/1:5", profile_point, profile_by_hand, profile),
 ]
 
 

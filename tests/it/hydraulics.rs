@@ -1,0 +1,303 @@
+//! Modular and critical flow, limits over the range of heads, branches: what a station file says comes out
+//! in the budget.
+
+use nappe::propagation::Coverage;
+use nappe::propagation::monte_carlo::Amount;
+use nappe::station::{Station, read, template};
+use nappe::study::{At, Budget, FlowState, Question, budget};
+
+fn station(text: &str) -> Station {
+    let (station, findings) = read(text.as_bytes());
+    assert!(findings.is_empty(), "{findings:#?}");
+    station.unwrap()
+}
+
+fn ask(station: &Station, head: f64, tailwater: Option<f64>, trials: Option<u64>) -> Budget {
+    let question = Question {
+        at: At::Head(head),
+        coverage: Coverage::Probability(0.95),
+        trials: trials.map(Amount::Fixed),
+        seed: 1,
+        tailwater,
+        month: None,
+    };
+    budget(station, &question, &|_| {}).unwrap()
+}
+
+fn codes(budget: &Budget) -> Vec<&'static str> {
+    budget.warnings.iter().map(|warning| warning.code.as_str()).collect()
+}
+
+const HEAD_ERROR: &str = r#"
+[[error_source]]
+name = "zero"
+acts_on = "head"
+standard_uncertainty = "2 mm"
+"#;
+
+fn profile(tailwater: &str) -> Station {
+    station(&format!(
+        r#"
+name = "Marren ford"
+[structure]
+kind = "triangular-profile"
+crest_width = "2.00 m"
+crest_height = "0.40 m"
+approach_width = "2.00 m"
+[head]
+range = ["0.02 m", "0.90 m"]
+{tailwater}
+{HEAD_ERROR}
+"#
+    ))
+}
+
+#[test]
+fn beyond_the_modular_limit_the_drowned_equation_takes_over_and_the_second_head_joins() {
+    let drowned = r#"
+[tailwater]
+level = "0.25 m"
+[[error_source]]
+name = "tailwater gauge"
+acts_on = "tailwater_head"
+standard_uncertainty = "5 mm"
+[[error_source]]
+name = "drowned-flow equation"
+acts_on = "drowned_flow_factor"
+expanded_uncertainty = "10 %"
+coverage_factor = 2
+"#;
+    let station = profile(drowned);
+    let found = ask(&station, 0.28, None, None);
+    let hydraulics = found.hydraulics.as_ref().unwrap();
+    assert_eq!(hydraulics.state, FlowState::Drowned);
+    assert!(hydraulics.factor.unwrap() < 1.0);
+    assert!(codes(&found).contains(&"drowned_flow"));
+    let by_tailwater = found.rows.iter().find(|row| row.name == "tailwater gauge").unwrap();
+    assert!(by_tailwater.contribution > 0.0);
+    // Well above it the same station is modular, and the second head means nothing.
+    let free = ask(&station, 0.60, None, None);
+    assert_eq!(free.hydraulics.as_ref().unwrap().state, FlowState::Modular);
+    assert!(!codes(&free).contains(&"drowned_flow"));
+    let by_tailwater = free.rows.iter().find(|row| row.name == "tailwater gauge").unwrap();
+    assert_eq!(by_tailwater.contribution, 0.0);
+    // And equals the station that says nothing of its tailwater.
+    let unknown = ask(&profile(""), 0.60, None, None);
+    assert_eq!(unknown.hydraulics.as_ref().unwrap().state, FlowState::NotChecked);
+    assert!((free.result.value / unknown.result.value - 1.0).abs() < 1e-14);
+    // The level can be asked about in place of the file's.
+    let asked = ask(&station, 0.28, Some(-0.1), None);
+    assert_eq!(asked.hydraulics.as_ref().unwrap().state, FlowState::Modular);
+}
+
+#[test]
+fn a_tailwater_that_follows_the_discharge_is_solved_together_with_it() {
+    let rated = r#"
+[tailwater]
+table = [["0 l/s", "-300 mm"], ["200 l/s", "150 mm"], ["2 m3/s", "600 mm"]]
+"#;
+    let station = profile(rated);
+    let found = ask(&station, 0.35, None, None);
+    let level = found.hydraulics.as_ref().unwrap().tailwater_head.unwrap();
+    let by_hand = 0.150 + (found.result.value - 0.2) / 1.8 * 0.450;
+    assert!((level - by_hand).abs() < 1e-12, "{level} against {by_hand}");
+    assert_eq!(found.tailwater, Some(level));
+    // The same level as a constant gives the same discharge.
+    let constant = profile(&format!("[tailwater]\nlevel = \"{level} m\"\n"));
+    let same = ask(&constant, 0.35, None, None);
+    assert!((same.result.value / found.result.value - 1.0).abs() < 1e-12);
+    // But an error of the head now moves the tailwater as well, so it acts less.
+    assert!(found.linear.standard_uncertainty < same.linear.standard_uncertainty);
+}
+
+#[test]
+fn a_structure_without_a_drowned_equation_says_that_its_flow_is_too_high() {
+    let text = r#"
+name = "Lower sluice"
+[structure]
+kind = "rectangular-throated-flume"
+throat_width = "0.60 m"
+throat_length = "1.20 m"
+throat_invert_height = "0.10 m"
+approach_width = "1.00 m"
+[head]
+range = ["0.08 m", "0.50 m"]
+[tailwater]
+level = "0.35 m"
+modular_limit = 0.85
+"#;
+    let station = station(&format!("{text}{HEAD_ERROR}"));
+    let found = ask(&station, 0.38, None, None);
+    assert_eq!(found.hydraulics.as_ref().unwrap().state, FlowState::NotModular);
+    assert!(codes(&found).contains(&"not_modular"));
+    let coefficient = found.rows.iter().find(|row| row.name == "published coefficient").unwrap();
+    assert!(coefficient.outside_limits);
+    // The energy of a tailwater as high as that drowns the control as well.
+    let lower = ask(&station, 0.33, None, None);
+    assert!(codes(&lower).contains(&"not_critical"), "{:?}", codes(&lower));
+    let higher = ask(&station, 0.48, None, None);
+    assert_eq!(higher.hydraulics.as_ref().unwrap().state, FlowState::Modular);
+}
+
+#[test]
+fn each_limit_says_at_which_heads_it_fails() {
+    let found = ask(&profile(""), 0.3, None, None);
+    let heads = |quantity: &str| {
+        let limit = found.limits.iter().find(|state| state.limit.quantity == quantity).unwrap();
+        limit.fails_at.clone().unwrap()
+    };
+    // h >= 0.03 m fails from the foot of the range to 0.03 m; p does not depend on the head.
+    let [[from, to]] = heads("h")[..] else { panic!("{:?}", heads("h")) };
+    assert!((from - 0.02).abs() < 1e-12 && (to - 0.03).abs() < 1e-6, "{from} {to}");
+    assert!(heads("p").is_empty());
+    let margin = |quantity: &str| {
+        found.limits.iter().find(|state| state.limit.quantity == quantity).unwrap().margin
+    };
+    assert!((margin("h") - 0.27).abs() < 1e-12);
+    // b/h >= 2 fails above 1 m, beyond this range.
+    assert!(heads("b/h").is_empty());
+}
+
+#[test]
+fn the_largest_head_and_the_place_of_the_gauge_are_checked() {
+    let text = r#"
+name = "Lower sluice"
+[structure]
+kind = "thin-plate-full-width"
+crest_width = "1.00 m"
+crest_height = "0.50 m"
+[head]
+range = ["0.05 m", "0.30 m"]
+maximum = "0.35 m"
+gauge_distance = "1.0 m"
+"#;
+    let station = station(&format!("{text}{HEAD_ERROR}"));
+    let found = ask(&station, 0.36, None, None);
+    assert!(codes(&found).contains(&"above_maximum"));
+    // 4 times the largest head is 1.4 m.
+    assert!(codes(&found).contains(&"gauge_misplaced"));
+    let bounds: Vec<f64> = found
+        .limits
+        .iter()
+        .filter(|state| state.limit.quantity == "gauge_distance")
+        .map(|state| state.bound)
+        .collect();
+    assert!((bounds[0] - 1.4).abs() < 1e-12 && (bounds[1] - 1.75).abs() < 1e-12, "{bounds:?}");
+    assert!(!codes(&ask(&station, 0.2, None, None)).contains(&"above_maximum"));
+}
+
+#[test]
+fn trials_on_another_branch_are_counted_and_a_near_branch_is_warned_of() {
+    let text = r#"
+name = "Hollow bridge"
+[structure]
+kind = "flat-v"
+crest_width = "4.00 m"
+cross_slope = "1:20"
+crest_height = "0.40 m"
+approach_width = "4.00 m"
+"#;
+    let station = station(&format!("{text}{HEAD_ERROR}"));
+    // The V is 0.1 m deep.
+    let near = ask(&station, 0.099, None, Some(20_000));
+    assert_eq!(near.regime, "inside the V");
+    assert!(codes(&near).contains(&"near_branch"));
+    assert!(codes(&near).contains(&"trials_across_branch"));
+    let across = near.monte_carlo.unwrap().result.tally.across as f64 / 20_000.0;
+    // Half a standard uncertainty from the border: 31 % of a normal distribution lie beyond.
+    assert!((across - 0.3085).abs() < 0.01, "{across}");
+    let far = ask(&station, 0.06, None, Some(20_000));
+    assert_eq!(far.monte_carlo.as_ref().unwrap().result.tally.across, 0);
+    assert!(!codes(&far).contains(&"near_branch"));
+    assert_eq!(ask(&station, 0.101, None, None).regime, "above the V");
+}
+
+#[test]
+fn close_to_no_flow_every_structure_stays_finite_and_counts_its_dry_trials() {
+    for structure in nappe::model::structures::CATALOGUE {
+        let file = template(structure)
+            .replace("standard_uncertainty = \"1.5 mm\"", "standard_uncertainty = \"30 mm\"");
+        let station = station(&file);
+        let found = ask(&station, 0.03, None, Some(10_000));
+        let part = found.monte_carlo.expect(structure.kind);
+        let statistics = part.result.outputs[0];
+        assert!(statistics.mean.is_finite(), "{}", structure.kind);
+        assert!(statistics.standard_uncertainty.is_finite(), "{}", structure.kind);
+        assert!(part.result.tally.dry > 500, "{}: {:?}", structure.kind, part.result.tally);
+        assert_eq!(part.result.tally.undefined, 0, "{}", structure.kind);
+    }
+}
+
+#[test]
+fn leaving_a_published_curve_is_counted() {
+    let text = r#"
+name = "Stone gully"
+[structure]
+kind = "broad-crested-v-shaped"
+vertex_angle = "120 deg"
+v_depth = "0.30 m"
+crest_height = "0.30 m"
+crest_length_along_flow = "0.80 m"
+approach_width = "1.50 m"
+"#;
+    let station = station(&format!("{text}{HEAD_ERROR}"));
+    // The coefficient is published from H/L = 0.1, which is 0.08 m.
+    let found = ask(&station, 0.081, None, Some(20_000));
+    let tally = found.monte_carlo.as_ref().unwrap().result.tally;
+    assert!(tally.outside_table > 1000, "{tally:?}");
+    assert!(codes(&found).contains(&"trials_outside_table"));
+}
+
+#[test]
+fn like_sections_of_a_compound_weir_share_the_error_of_their_coefficient() {
+    let text = r#"
+name = "Three bays"
+[structure]
+kind = "compound"
+approach_width = "4.00 m"
+crest_height = "0.40 m"
+[[structure.section]]
+kind = "triangular-profile"
+crest_level = "0 m"
+crest_width = "1.00 m"
+[[structure.section]]
+kind = "triangular-profile"
+crest_level = "0.20 m"
+crest_width = "3.00 m"
+"#;
+    let plain = station(&format!("{text}{HEAD_ERROR}"));
+    let found = ask(&plain, 0.5, None, None);
+    let of = |name: &str| found.rows.iter().find(|row| row.name == name).unwrap().contribution;
+    let (first, second) =
+        (of("published coefficient, section 1"), of("published coefficient, section 2"));
+    let head = of("zero");
+    let together = (first + second).hypot(head);
+    assert!((found.linear.standard_uncertainty / together - 1.0).abs() < 1e-12);
+    // What the file says of them stands.
+    let apart = station(&format!(
+        "{text}{HEAD_ERROR}[[correlation]]\nsources = [\"published coefficient, section 1\", \
+         \"published coefficient, section 2\"]\ncoefficient = 0\n"
+    ));
+    let apart = ask(&apart, 0.5, None, None);
+    let expected = (first * first + second * second + head * head).sqrt();
+    assert!((apart.linear.standard_uncertainty / expected - 1.0).abs() < 1e-12);
+}
+
+#[test]
+fn a_coefficient_without_a_published_uncertainty_is_asked_for() {
+    let text = r#"
+name = "Dyke overflow"
+[structure]
+kind = "trapezoidal-profile"
+crest_width = "3.00 m"
+crest_height = "0.50 m"
+crest_length_along_flow = "0.40 m"
+approach_width = "3.00 m"
+"#;
+    let silent = ask(&station(&format!("{text}{HEAD_ERROR}")), 0.3, None, None);
+    assert!(codes(&silent).contains(&"no_coefficient_source"));
+    let stated = "[[error_source]]\nname = \"coefficient\"\nacts_on = \"coefficient_factor\"\n\
+                  expanded_uncertainty = \"4 %\"\ncoverage_factor = 2\n";
+    let stated = ask(&station(&format!("{text}{HEAD_ERROR}{stated}")), 0.3, None, None);
+    assert!(!codes(&stated).contains(&"no_coefficient_source"));
+}
