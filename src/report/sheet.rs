@@ -56,11 +56,15 @@ fn regime_part(page: &mut Document, regime: &RegimeSheet, several: bool) {
     page.lines(regime.equations.iter().map(|line| format!("{} = {}", line.name, line.text)));
     page.heading("Derivatives");
     page.lines(regime.derivatives.iter().map(|line| format!("{} = {}", line.name, line.text)));
-    if regime.derivatives.iter().any(|line| line.name.starts_with("dF")) {
+    let has = |start: &str| regime.derivatives.iter().any(|line| line.name.starts_with(start));
+    if has("∂F") {
         page.paragraph(
-            "By the implicit-function theorem: for y that is the root of F, dy/dx = -(∂F/∂x)/(∂F/∂y); where \
-             a second quantity follows the discharge, dF/dQ and the lines with dQ go through it, and its own \
-             lines are at a fixed discharge.",
+            "In parts, each with the other names held. The chain rule joins them, and the implicit-function \
+             theorem: for y that is the root of F, dy/dx = -(dF/dx)/(dF/dy).",
+        );
+    } else if has("dF") {
+        page.paragraph(
+            "By the implicit-function theorem: for y that is the root of F, dy/dx = -(∂F/∂x)/(∂F/∂y).",
         );
     }
     page.heading("Limits of use and uncertainty of the coefficient");

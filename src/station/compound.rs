@@ -4,6 +4,7 @@ use toml::de::DeValue;
 
 use super::section::{Findings, Section, string};
 use super::structure::{StationInput, read_choice, read_input, report_kind};
+use super::tailwater::read_second_head;
 use crate::diagnostic::{Code, Diagnostic};
 use crate::model::structures::{
     self, CATALOGUE, CREST_LEVEL, Installation, can_be_section, find, section_inputs,
@@ -69,7 +70,7 @@ fn read_section(
     if !can_be_section(structure) {
         let title = format!("`{kind}` cannot be a section of a compound weir");
         findings.push(Diagnostic::error(Code::UnknownWord, value.span(), title).help(format!(
-            "its head is read inside it, or its law has an unknown of its own; {help}"
+            "its head is read inside it, not in an approach that sections share; {help}"
         )));
         return None;
     }
@@ -94,6 +95,7 @@ fn read_section(
         input.symbol = format!("{}_s{number}", spec.symbol);
         inputs.push(input);
     }
+    installation.second_head = Some(read_second_head(&mut section, &installation, true, findings));
     section.finish(findings);
     let complete = inputs.first().is_some_and(|input| input.key.ends_with(CREST_LEVEL.key));
     complete.then_some((structures::Section { installation, given }, inputs))

@@ -504,14 +504,11 @@ fn unstated(kind: &Kind, sources: &[ErrorSource], inputs: &[StationInput]) -> Ve
 fn warnings(
     sources: &[ErrorSource],
     inputs: &[StationInput],
-    unused: &[(String, Span)],
+    unused: &[(String, &'static str)],
 ) -> Vec<Warning> {
     let mut warnings = Vec::new();
-    for (key, _) in unused {
-        warnings.push(Warning::new(
-            Code::UnusedKey,
-            format!("`{key}` has no effect: the velocity of approach is inside this coefficient"),
-        ));
+    for (key, why) in unused {
+        warnings.push(Warning::new(Code::UnusedKey, format!("`{key}` has no effect: {why}")));
     }
     let head = inputs.iter().position(|input| input.key == "head");
     let acts_on_head =

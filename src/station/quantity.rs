@@ -37,11 +37,17 @@ pub(super) fn read(
         findings.error(Code::WrongType, span, title);
         return None;
     };
-    if dimension == Some(Dimension::NONE)
-        && let Some(value) = slope(text)
-    {
+    if dimension == Some(Dimension::NONE) && text.contains(':') {
         let text = text.trim().to_owned();
-        return Some(Stated { value, unit: Unit::one(), text, span });
+        if let Some(value) = slope(&text) {
+            return Some(Stated { value, unit: Unit::one(), text, span });
+        }
+        let title = format!("`{what}`: \"{}\" is no slope", shown(&text));
+        findings.push(
+            Diagnostic::error(Code::NotAQuantity, span, title)
+                .help("a slope is vertical : horizontal, such as \"1:20\""),
+        );
+        return None;
     }
     match Quantity::parse(text) {
         Ok(quantity) => checked(what, text, quantity, span, dimension, findings),

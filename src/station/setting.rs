@@ -144,6 +144,10 @@ impl Station {
         let Kind::Catalogue(installation) = &self.kind else { return Ok(None) };
         let inputs = self.indicated_inputs(moment);
         let known = self.known(moment, &inputs);
+        let mut installation = installation.as_ref().clone();
+        if moment.tailwater.is_some() {
+            set_rating(&mut installation, None);
+        }
         let form = installation.form(&self.values(moment));
         Ok(Some((form, corrected(&inputs, &known.sources))))
     }
@@ -346,6 +350,10 @@ impl Station {
             Outcome::Dry => Err(Refusal::Dry(head.unwrap_or(f64::NAN))),
             Outcome::Undefined => Err(Refusal::NoSolution(
                 match self.kind {
+                    Kind::Catalogue(_) if self.tailwater.is_some() => {
+                        "critical flow cannot pass at this head, or the tailwater is too near to it for \
+                         the equation of drowned flow"
+                    }
                     Kind::Catalogue(_) => "critical flow cannot pass at this head",
                     Kind::Own(_) => {
                         "its unknown has no root in its range, or a division by 0, or a root or \

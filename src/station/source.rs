@@ -6,6 +6,7 @@ use super::spread::{Spread, Width, shift};
 use super::spread_reader::Reader;
 use super::structure::{Evidence, StationInput, read_evidence};
 use crate::diagnostic::{Code, Diagnostic, Span, listed, nearest, shown};
+use crate::model::structures::{DROWNED_FLOW_FACTOR, TAILWATER_HEAD};
 use crate::propagation::Distribution;
 use crate::units::Dimension;
 
@@ -316,6 +317,11 @@ fn unknown_input(key: &str, span: Span, inputs: &[StationInput], findings: &mut 
     let shown = shown(key);
     let title = format!("`{shown}` is no input of this structure");
     let diagnostic = Diagnostic::error(Code::UnknownInput, span.clone(), title);
+    if [TAILWATER_HEAD.key, DROWNED_FLOW_FACTOR.key].contains(&key) {
+        findings
+            .push(diagnostic.help("[tailwater] brings it: state the level below the structure"));
+        return;
+    }
     findings.push(match nearest(key, keys.iter().copied()) {
         Some(near) => {
             diagnostic.help(format!("the nearest is `{near}`")).fix(span, format!("\"{near}\""))

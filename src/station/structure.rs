@@ -62,8 +62,8 @@ pub struct Evidence {
 pub(super) struct StructureSection {
     pub(super) kind: Kind,
     pub(super) inputs: Vec<StationInput>,
-    /// Keys that have no effect on this structure, with their places.
-    pub(super) unused: Vec<(String, Span)>,
+    /// Keys that have no effect on this structure, and why.
+    pub(super) unused: Vec<(String, &'static str)>,
 }
 
 pub(super) fn read(
@@ -93,10 +93,14 @@ pub(super) fn read(
     let mut unused = Vec::new();
     // Every structure takes the key; thin plates have no velocity head for it to act on.
     if !inputs.iter().any(|input| input.key == KINETIC_ENERGY_COEFFICIENT.key)
-        && let Some(value) = section.get(KINETIC_ENERGY_COEFFICIENT.key)
+        && section.get(KINETIC_ENERGY_COEFFICIENT.key).is_some()
     {
         read_input(&mut section, &KINETIC_ENERGY_COEFFICIENT, findings);
-        unused.push((KINETIC_ENERGY_COEFFICIENT.key.to_owned(), value.span()));
+        let why = "the velocity of approach is inside this coefficient";
+        unused.push((KINETIC_ENERGY_COEFFICIENT.key.to_owned(), why));
+    }
+    if section.key_span(GRAVITY.key).is_some() && !installation.uses_gravity() {
+        unused.push((GRAVITY.key.to_owned(), "gravity is inside this coefficient"));
     }
     section.finish(findings);
     check_widths(&inputs, findings);
@@ -138,7 +142,9 @@ pub(super) fn read_choice(
     if found.is_none() {
         let title = format!("`{}` cannot be \"{}\"", choice.key, shown(&word));
         let diagnostic = Diagnostic::error(Code::UnknownWord, value.span(), title).help(help);
-        findings.push(match nearest(&word, words) {
+        // Another size is no mend of a size.
+        let is_size = word.starts_with(|c: char| c.is_ascii_digit());
+        findings.push(match nearest(&word, words).filter(|_| !is_size) {
             Some(near) => diagnostic.fix(value.span(), format!("\"{near}\"")),
             None => diagnostic,
         });
@@ -146,27 +152,36 @@ pub(super) fn read_choice(
     found
 }
 
-/// No crest or throat is wider than the channel that leads to it.
+/// Keys of the width of a control.
+const CONTROLS: [&str; 3] = ["crest_width", "throat_width", "throat_diameter"];
+
+/// No crest or throat is wider than the channel that leads to it, nor are those of all sections together.
 fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
     let find = |key: &str| inputs.iter().find(|input| input.key == key);
     let Some(approach) = find("approach_width") else { return };
-    for control in ["crest_width", "throat_width", "throat_diameter"].into_iter().filter_map(find) {
-        let (Some(control_width), Some(approach_width)) = (control.value, approach.value) else {
+    let Some(approach_width) = approach.value else { return };
+    let is_of_section = |input: &&StationInput| {
+        input.key.starts_with("section ") && CONTROLS.iter().any(|key| input.key.ends_with(key))
+    };
+    let together: f64 = inputs.iter().filter(is_of_section).filter_map(|input| input.value).sum();
+    let controls = CONTROLS.into_iter().filter_map(find).map(|control| {
+        let name = format!("`{}` ({})", control.key, control.text);
+        (name, control.value.unwrap_or(0.0), control.span.clone())
+    });
+    let sections = (format!("the widths of the sections together ({together} m)"), together, None);
+    for (name, width, place) in controls.chain([sections]) {
+        // Room for the rounding of a sum.
+        if width <= approach_width * (1.0 + 1e-12) {
             continue;
-        };
-        if control_width > approach_width {
-            let span = approach.span.clone().unwrap_or(0..0);
-            let title = format!(
-                "`approach_width` ({}) is below `{}` ({})",
-                approach.text, control.key, control.text
-            );
-            let diagnostic = Diagnostic::error(Code::OutsideDomain, span, title)
-                .help("the approach channel is at least as wide as the control");
-            findings.push(match &control.span {
-                Some(span) => diagnostic.context(span.clone(), "the control is wider"),
-                None => diagnostic,
-            });
         }
+        let span = approach.span.clone().unwrap_or(0..0);
+        let title = format!("`approach_width` ({}) is below {name}", approach.text);
+        let diagnostic = Diagnostic::error(Code::OutsideDomain, span, title)
+            .help("the approach channel is at least as wide as the control");
+        findings.push(match place {
+            Some(place) => diagnostic.context(place, "the control is wider"),
+            None => diagnostic,
+        });
     }
 }
 

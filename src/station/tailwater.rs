@@ -7,9 +7,9 @@ use toml::de::DeValue;
 use super::quantity::{self, Stated};
 use super::section::{Findings, Section, string};
 use super::structure::{StationInput, input_without_value, read_value};
-use crate::diagnostic::{Code, Diagnostic, nearest, shown};
+use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::expression::Table;
-use crate::model::structures::{Installation, SecondHead, TAILWATER_HEAD};
+use crate::model::structures::{Installation, SecondHead, SecondHeadAt, TAILWATER_HEAD};
 use crate::units::{Dimension, Unit};
 
 /// Where the level of the tailwater comes from.
@@ -46,8 +46,6 @@ pub(super) fn read(
     let table = section.get("table");
     let column = section.get("column");
     let unit = section.text("unit", findings);
-    let drowned = read_drowned(&mut section, installation, findings);
-    let modular_limit = read_limit(&mut section, findings);
     let mut input = input_without_value(&TAILWATER_HEAD.into());
     let tailwater = match (level, table, column) {
         (Some(level), None, None) => {
@@ -71,20 +69,40 @@ pub(super) fn read(
         let title = "`unit` belongs to a column of the record";
         findings.error(Code::KeysDisagree, span, title);
     }
-    check_modular_limit(installation, modular_limit, &section, findings);
-    section.finish(findings);
     let rating = match &tailwater {
         Some(Tailwater::Rating(table)) => Some((table.clone(), 0.0)),
         _ => None,
     };
-    for section in &mut installation.sections {
-        let drowned = section.installation.drowned().first().copied();
-        section.installation.second_head =
-            Some(SecondHead { drowned, modular_limit: None, rating: None });
+    let second = if installation.sections.is_empty() {
+        read_second_head(&mut section, installation, false, findings)
+    } else {
+        refuse_for_sections(&mut section, findings);
+        SecondHead { drowned: None, modular_limit: None, rating: None }
+    };
+    installation.second_head = Some(SecondHead { rating, ..second });
+    for each in &installation.sections {
+        check_limit_is_known(&each.installation, section.span.clone(), findings);
     }
-    installation.second_head = Some(SecondHead { drowned, modular_limit, rating });
+    if installation.sections.is_empty() {
+        check_limit_is_known(installation, section.span.clone(), findings);
+    }
+    section.finish(findings);
     add_inputs(installation, &input, inputs);
     tailwater
+}
+
+/// Each section of a compound weir has its own equation and limit.
+fn refuse_for_sections(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) {
+    for key in ["drowned_flow", "modular_limit"] {
+        if section.get(key).is_some() {
+            let span = section.key_span(key).unwrap_or_else(|| section.span.clone());
+            let title = format!("`{key}` has no effect on a compound weir as a whole");
+            findings.push(
+                Diagnostic::error(Code::UnusedKey, span, title)
+                    .help("write it into each [[structure.section]]"),
+            );
+        }
+    }
 }
 
 /// The inputs that the second head brings, in the order of the installation.
@@ -167,7 +185,7 @@ fn read_rating(value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) -> Opt
 
 fn read_column(
     value: &Spanned<DeValue<'_>>,
-    unit: Option<&(String, crate::diagnostic::Span)>,
+    unit: Option<&(String, Span)>,
     findings: &mut Findings<'_>,
 ) -> Option<Tailwater> {
     let name = string("column", value, findings)?;
@@ -190,35 +208,71 @@ fn read_column(
     Some(Tailwater::Column { name, unit: unit? })
 }
 
-/// Which of the structure's drowned-flow equations takes over: the first that is published for it, unless
-/// the file chooses.
-fn read_drowned(
+/// What a table says of the second head of a structure, besides its level: which drowned-flow equation
+/// takes over, and a modular limit of its own.
+///
+/// Without a word, the first equation whose head is the tailwater's; a section of a compound weir, which
+/// shares its tailwater, can have no other.
+pub(super) fn read_second_head(
     section: &mut Section<'_, '_>,
     installation: &Installation,
+    is_section: bool,
     findings: &mut Findings<'_>,
-) -> Option<usize> {
-    let published = installation.drowned();
-    let Some((word, span)) = section.text("drowned_flow", findings) else {
-        return published.first().copied();
+) -> SecondHead {
+    let equations = installation.structure.drowned;
+    let by_tailwater = |index: &usize| equations[*index].reads == SecondHeadAt::Tailwater;
+    let mut published = installation.drowned();
+    let first = published.iter().copied().find(by_tailwater);
+    if is_section {
+        published.retain(by_tailwater);
+    }
+    let words: Vec<&str> =
+        published.iter().map(|index| equations[*index].name).chain([NO_EQUATION]).collect();
+    let drowned = match section.text("drowned_flow", findings) {
+        Some((word, _)) if word == NO_EQUATION => None,
+        Some((word, span)) => {
+            let found = published.iter().find(|index| equations[**index].name == word).copied();
+            if found.is_none() {
+                unknown_equation(&word, span, &words, findings);
+            }
+            found
+        }
+        None => {
+            if first.is_none() && !published.is_empty() {
+                let title = format!("{} needs `drowned_flow`: which head is it", section.name());
+                let help = format!(
+                    "\"{}\" if the level is that at the tapping, \"{NO_EQUATION}\" if it is the tailwater's",
+                    words[0]
+                );
+                findings.push(
+                    Diagnostic::error(Code::MissingKey, section.span.clone(), title).help(help),
+                );
+            }
+            first
+        }
     };
-    if word == NO_EQUATION {
-        return None;
-    }
-    let name = |index: &usize| installation.structure.drowned[*index].name;
-    let found = published.iter().find(|index| name(index) == word).copied();
-    if found.is_none() {
-        let mut words: Vec<&str> = published.iter().map(name).collect();
-        words.push(NO_EQUATION);
+    let modular_limit = read_limit(section, findings);
+    if let Some(span) = section.key_span("modular_limit")
+        && !installation.structure.modular.highest.contains("M_L")
+    {
         let title =
-            format!("`drowned_flow`: \"{}\" is not published for this structure", shown(&word));
-        let diagnostic = Diagnostic::error(Code::UnknownWord, span.clone(), title)
-            .help(format!("one of: {}", words.join(", ")));
-        findings.push(match nearest(&word, words) {
-            Some(near) => diagnostic.fix(span, format!("\"{near}\"")),
-            None => diagnostic,
-        });
+            "`modular_limit` has no effect: the limit of this structure is no ratio of heads";
+        findings.push(
+            Diagnostic::error(Code::UnusedKey, span, title)
+                .help(installation.structure.modular.words),
+        );
     }
-    found
+    SecondHead { drowned, modular_limit, rating: None }
+}
+
+fn unknown_equation(word: &str, span: Span, words: &[&str], findings: &mut Findings<'_>) {
+    let title = format!("`drowned_flow`: \"{}\" is not published for this structure", shown(word));
+    let diagnostic = Diagnostic::error(Code::UnknownWord, span.clone(), title)
+        .help(format!("one of: {}", words.join(", ")));
+    findings.push(match nearest(word, words.iter().copied()) {
+        Some(near) => diagnostic.fix(span, format!("\"{near}\"")),
+        None => diagnostic,
+    });
 }
 
 fn read_limit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Option<f64> {
@@ -235,28 +289,20 @@ fn read_limit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Opt
     Some(stated.value)
 }
 
-/// A limit that is no ratio takes no other, and one that nobody published has to be stated.
-fn check_modular_limit(
-    installation: &Installation,
-    stated: Option<f64>,
-    section: &Section<'_, '_>,
-    findings: &mut Findings<'_>,
-) {
+/// A limit that nobody published has to be stated.
+fn check_limit_is_known(installation: &Installation, span: Span, findings: &mut Findings<'_>) {
     let structure = installation.structure;
-    let is_ratio = structure.modular.highest.contains("M_L");
-    if stated.is_some() && !is_ratio {
-        let span = section.key_span("modular_limit").unwrap_or_else(|| section.span.clone());
-        let title =
-            "`modular_limit` has no effect: the limit of this structure is no ratio of heads";
-        findings
-            .push(Diagnostic::error(Code::UnusedKey, span, title).help(structure.modular.words));
-    }
+    let stated = installation.second_head.as_ref().and_then(|second| second.modular_limit);
     let in_choice = structure.choice.is_some_and(|c| c.symbols.iter().any(|(s, _)| *s == "M_L"));
+    let is_ratio = structure.modular.highest.contains("M_L");
     if stated.is_none() && is_ratio && structure.modular.ratio.is_none() && !in_choice {
-        let title = "[tailwater] needs `modular_limit`: none is known for this structure";
+        let title =
+            format!("no modular limit of `{}` is known: state `modular_limit`", structure.kind);
         findings.push(
-            Diagnostic::error(Code::MissingKey, section.span.clone(), title)
-                .help("from your copy of the standard, for example modular_limit = 0.75"),
+            Diagnostic::error(Code::MissingKey, span, title).help(
+                "from your copy of the standard, for example modular_limit = 0.75, in [tailwater] or in \
+                 the section of a compound weir",
+            ),
         );
     }
 }

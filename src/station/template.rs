@@ -114,14 +114,18 @@ fn coefficient(structure: &Structure) -> String {
 
 /// The tailwater as a suggestion.
 fn tailwater(structure: &Structure) -> String {
+    if structure.kind == COMPOUND {
+        return COMPOUND_TAILWATER.to_owned();
+    }
     let names: Vec<&str> = structure.drowned.iter().map(|drowned| drowned.name).collect();
     let mut out = format!(
         "\n# The level below the structure, if it is known: {}.\n# [tailwater]\n\
          # level = \"-0.20 m\"    # above the crest; or table = [[\"0 l/s\", \"-300 mm\"], [\"90 l/s\", \"-60 mm\"]]\n",
         structure.modular.words
     );
-    if let Some(first) = names.first() {
-        let _ = writeln!(out, "# drowned_flow = \"{first}\"    # or: {}, none", names.join(", "));
+    if let Some((first, others)) = names.split_first() {
+        let others: Vec<&str> = others.iter().copied().chain(["none"]).collect();
+        let _ = writeln!(out, "# drowned_flow = \"{first}\"    # or: {}", others.join(", "));
     }
     if structure.modular.highest.contains("M_L") {
         let ratio = structure.modular.ratio.unwrap_or(0.7);
@@ -152,6 +156,25 @@ kind = "triangular-profile"
 crest_level = "0.15 m"
 crest_width = "2.00 m"
 # coefficient_factor = 1    # of this section; error sources act on "section 2 coefficient_factor"
+"#;
+
+const COMPOUND_TAILWATER: &str = r#"
+# The level below the structure, if it is known; drowned_flow and modular_limit stand in each section.
+# [tailwater]
+# level = "-0.20 m"    # above the lowest crest; or table = [["0 l/s", "-300 mm"], ["90 l/s", "-60 mm"]]
+#
+# [[error_source]]
+# name = "tailwater gauge"
+# acts_on = "tailwater_head"
+# standard_uncertainty = "5 mm"
+# fixed_until = "survey"
+#
+# [[error_source]]
+# name = "drowned-flow equation"
+# acts_on = ["section 1 drowned_flow_factor", "section 2 drowned_flow_factor"]
+# expanded_uncertainty = "10 %"
+# coverage_factor = 2
+# fixed_until = "rebuilding"
 "#;
 
 const SOURCES: &str = r#"

@@ -3,8 +3,8 @@
 use serde::Serialize;
 
 use crate::model::structures::{Choice, Form, Installation, InstalledInput, SecondHead, Structure};
-use crate::model::{Confidence, Model};
-use crate::units::{significant, with_unit};
+use crate::model::{Blueprint, Confidence, Input, Model};
+use crate::units::{Dimension, significant, with_unit};
 
 /// All that is known of a structure.
 #[derive(Clone, Debug, Serialize)]
@@ -299,15 +299,74 @@ fn regime_sheet(form: &Form, mut model: Model) -> RegimeSheet {
         name: form.regime.clone(),
         when: form.when.clone(),
         equations,
-        derivatives: derivatives(&mut model),
+        derivatives: derivatives(form, &mut model),
         limits,
         coefficient: rules.chain(unstated).collect(),
     }
 }
 
-/// The derivatives of the result. Through an unknown they are given in parts: with the unknown held, by
-/// the unknown, and of the unknown, which together are dQ/dx = ∂Q/∂x + ∂Q/∂H dH/dx.
-fn derivatives(model: &mut Model) -> Vec<DerivativeLine> {
+/// A derivative longer than this is not read by anybody: it is then given in parts.
+const READABLE: usize = 240;
+
+/// The derivatives of the result by every input; where one of them is too long to read, those of each
+/// definition by what stands in it, which the chain rule joins.
+fn derivatives(form: &Form, model: &mut Model) -> Vec<DerivativeLine> {
+    let whole = whole_derivatives(model);
+    if whole.iter().all(|line| line.text.chars().count() <= READABLE) {
+        whole
+    } else {
+        partial_derivatives(form, model)
+    }
+}
+
+/// For each definition, and each residual of an unknown, its derivatives by the names in it, those held.
+fn partial_derivatives(form: &Form, model: &Model) -> Vec<DerivativeLine> {
+    let several = model.unknowns().len() > 1;
+    let symbols: Vec<Input> = model
+        .inputs()
+        .iter()
+        .cloned()
+        .chain(model.definitions().iter().map(|each| as_input(&each.name, each.dimension)))
+        .chain(model.unknowns().iter().map(|each| as_input(&each.name, each.dimension)))
+        .collect();
+    let definitions = form.blueprint.definitions.iter().cloned();
+    let residuals = form.blueprint.unknowns.iter().filter_map(|unknown| {
+        let (left, right) = unknown.equation.split_once(" = ")?;
+        Some((residual_name(&unknown.name, several), format!("{left} - ({right})")))
+    });
+    let mut lines = Vec::new();
+    for (name, text) in residuals.chain(definitions) {
+        let blueprint = Blueprint {
+            inputs: symbols.iter().filter(|input| input.symbol != name).cloned().collect(),
+            definitions: vec![(name.clone(), text)],
+            result: name.clone(),
+            constants: form.blueprint.constants.clone(),
+            tables: form.blueprint.tables.clone(),
+            ..Blueprint::default()
+        };
+        // What is part of a model that builds, builds by itself.
+        let Ok(mut part) = Model::build(&blueprint) else { continue };
+        let inputs = part.inputs().to_vec();
+        for (index, input) in inputs.iter().enumerate() {
+            let by = crate::model::expression::SymbolId(index as u32);
+            let derivative = part.partial_derivative(part.result(), by);
+            if !part.graph().is_zero(derivative) {
+                lines.push(DerivativeLine {
+                    name: format!("∂{name}/∂{}", input.symbol),
+                    text: part.text(derivative),
+                });
+            }
+        }
+    }
+    lines
+}
+
+fn as_input(name: &str, dimension: Dimension) -> Input {
+    Input { key: name.to_owned(), symbol: name.to_owned(), dimension }
+}
+
+/// The derivatives of the result by every input, through the unknowns.
+fn whole_derivatives(model: &mut Model) -> Vec<DerivativeLine> {
     let result = model.result();
     let name = model.result_name().to_owned();
     let mut lines = Vec::new();

@@ -139,7 +139,7 @@ pub(super) fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option
             Code::FromMemory,
             format!(
                 "quoted from memory, confirm against your copy of {}: {}",
-                form.structure.standard.document,
+                form.standards.join(" and "),
                 from_memory.join(", ")
             ),
         )

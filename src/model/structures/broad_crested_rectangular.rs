@@ -43,7 +43,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(ISO_3846, Confidence::Seen),
             Limit::at_least("b", "0.30", "crest width").by(ISO_3846, Confidence::Memory),

@@ -55,7 +55,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h - x_delta*L",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(ISO_4374, Confidence::Memory),
             Limit::at_least("h/L", "0.05", "head over crest length")

@@ -68,7 +68,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: Some("max(0.1 - H/L, H/L - 1)"),
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(ISO_8333, Confidence::Memory),
             Limit::at_least("h/L", "0.05", "head over crest length")

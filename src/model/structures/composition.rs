@@ -7,8 +7,8 @@ use std::collections::BTreeSet;
 
 use super::approach::{LARGEST_FLOW, RECTANGULAR, TOTAL_HEAD};
 use super::form::{
-    Form, InstalledLimit, LimitKind, add_sources, add_tailwater, constants, drowned_flow, extend,
-    factor_definitions, identifiers, numbers,
+    Form, InstalledLimit, add_sources, add_tailwater, constants, drowned_flow, extend,
+    factor_definitions, identifiers, modular_limit, numbers,
 };
 use super::input::{
     COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, InputSpec, InstalledInput, KINETIC_ENERGY_COEFFICIENT,
@@ -80,15 +80,26 @@ fn kept_definitions(regime: &Regime) -> Vec<(&'static str, &'static str)> {
     regime.definitions.iter().copied().filter(|(name, _)| !replaced(name)).collect()
 }
 
+/// The structure of a section; its drowned flow is left out where nothing is known of the tailwater.
+fn installed(section: &Section, tailwater_known: bool) -> Installation {
+    let second_head = section.installation.second_head.clone().filter(|_| tailwater_known);
+    Installation { second_head, ..section.installation.clone() }
+}
+
 /// The inputs of one section, numbered from 1.
-pub(super) fn inputs(section: &Section, number: usize) -> Vec<InstalledInput> {
-    let structure = section.installation.structure;
+pub(super) fn inputs(
+    section: &Section,
+    number: usize,
+    tailwater_known: bool,
+) -> Vec<InstalledInput> {
+    let installation = installed(section, tailwater_known);
+    let structure = installation.structure;
     let given = |spec: &InputSpec| {
         spec.default_value().is_some() || section.given.iter().any(|key| key == spec.key)
     };
     let mut specs = vec![CREST_LEVEL];
     specs.extend(section_inputs(structure).into_iter().filter(given));
-    if drowned_flow(&section.installation).is_some() {
+    if drowned_flow(&installation).is_some() {
         specs.push(DROWNED_FLOW_FACTOR);
     }
     specs
@@ -151,6 +162,7 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
         limits: whole.limits.iter().map(Into::into).collect(),
         automatic: Vec::new(),
         unstated: Vec::new(),
+        standards: Vec::new(),
         numbers: Vec::new(),
         highest_tailwater: None,
     };
@@ -192,11 +204,13 @@ fn add_section(
     values: &Values,
     to: &mut Form,
 ) -> Added {
-    let installation = &section.installation;
+    let tailwater_known = whole.second_head.is_some();
+    let installation = &installed(section, tailwater_known);
     let structure = installation.structure;
-    let regime = &structure.regimes[(structure.regime_for)(&section_values(values, number))];
+    let own_values = section_values(values, number);
+    let regime = &structure.regimes[(structure.regime_for)(&own_values)];
     let drowned = drowned_flow(installation);
-    let inputs = inputs(section, number);
+    let inputs = inputs(section, number, tailwater_known);
     let mut own: BTreeSet<String> = ["Q", "h", "h_2"].into_iter().map(str::to_owned).collect();
     own.extend(inputs.iter().map(|input| input.spec.symbol.to_owned()));
     let constants = constants(installation);
@@ -221,14 +235,16 @@ fn add_section(
     if regime.implicit == Implicit::Discharge {
         texts.push((name("H"), format!("H - {level}")));
     }
-    if whole.second_head.is_some() {
+    if tailwater_known {
         texts.push((name("h_2"), format!("h_2 - {level}")));
     }
     if has_height && !inputs.iter().any(|input| input.spec.symbol == "p") {
         texts.push((name("p"), format!("p + {level}")));
     }
     texts.extend(definitions.iter().chain(factor).map(|(left, right)| (name(left), name(right))));
-    let flowing = name(regime.flowing);
+    // A section passes water from where the total head is above its crest.
+    let by_total_head = regime.implicit == Implicit::Discharge && regime.flowing == "h";
+    let flowing = name(if by_total_head { "H" } else { regime.flowing });
     if let Some(solved) = regime.solved {
         // A dry section has no such quantity; a hair of water in its place keeps every slope a number.
         let wet = numbered("H_wet", number);
@@ -256,7 +272,11 @@ fn add_section(
             (table.renamed(numbered), dimension)
         },
     ));
-    add_limits(structure, regime, &name, (number, &flowing), &own, whole.second_head.is_some(), to);
+    if !to.standards.contains(&structure.standard.document) {
+        to.standards.push(structure.standard.document);
+    }
+    let modular = tailwater_known.then(|| modular_limit(installation));
+    add_limits(structure, regime, &name, (number, &flowing), &own, modular, to);
     let mut sources = Form { automatic: Vec::new(), unstated: Vec::new(), ..to.clone() };
     add_sources(structure, regime, drowned, &mut sources);
     to.automatic.extend(sources.automatic.into_iter().map(|source| super::AutomaticSource {
@@ -269,7 +289,7 @@ fn add_section(
     to.unstated.extend(sources.unstated.into_iter().map(|(keys, why)| {
         (keys.into_iter().map(|key| format!("section {number} {key}")).collect(), why)
     }));
-    to.blueprint.borders.extend(regime.borders.iter().map(|text| name(text)));
+    to.blueprint.borders.extend((regime.borders)(&own_values).iter().map(|text| name(text)));
     to.numbers.extend(
         numbers(installation, regime, drowned)
             .into_iter()
@@ -295,7 +315,7 @@ fn add_limits(
     name: &dyn Fn(&str) -> String,
     (number, flowing): (usize, &str),
     own: &BTreeSet<String>,
-    tailwater_known: bool,
+    modular: Option<InstalledLimit>,
     to: &mut Form,
 ) {
     let known = |text: &str| {
@@ -316,14 +336,7 @@ fn add_limits(
     };
     let of_use = regime.limits.iter().filter(|l| known(l.quantity) && known(l.bound));
     to.limits.extend(of_use.map(|limit| install(limit.into())));
-    if tailwater_known {
-        let modular = structure.modular;
-        to.limits.push(install(InstalledLimit {
-            kind: LimitKind::Modular,
-            ..super::form::modular_limit(structure)
-        }));
-        debug_assert!(known(modular.highest));
-    }
+    to.limits.extend(modular.map(install));
 }
 
 /// The indicated values of one section: its own inputs, and the head above its crest.

@@ -17,7 +17,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     title: "Compound weir of several sections",
     standard: ISO_14139,
     inputs: &[
-        APPROACH_WIDTH,
+        InputSpec { example: "3.00 m", ..APPROACH_WIDTH },
         InputSpec::length(
             "crest_height",
             "p",
@@ -38,7 +38,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
         coefficient: Coefficient::FromUser("each section has its own"),
     }],

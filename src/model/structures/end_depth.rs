@@ -32,7 +32,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.04", "depth at the brink").by(ISO_18481, Confidence::Memory),
             Limit::at_least("b", "0.30", "channel width").by(ISO_18481, Confidence::Memory),
@@ -55,7 +55,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         confidence: Confidence::Memory,
     },
     critical: None,
-    velocity_of_approach: "inside the coefficient: depth at the brink over critical depth is 0.715 \
+    velocity_of_approach: "inside the coefficient: depth at the brink over critical depth is 0.713 \
                            confined, 0.705 unconfined",
     head_measured: HeadPosition {
         words: "depth at the brink itself, on the centre line",

@@ -3,7 +3,8 @@
 use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, froude_at_most};
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, HeadPosition, Implicit, InputSpec,
-    KINETIC_ENERGY_COEFFICIENT, ModularLimit, PublishedTable, Regime, Structure, Values,
+    KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, PublishedTable, Regime, SecondHeadAt,
+    Structure, Values,
 };
 use crate::model::source::{ISO_4377, PRACTICE};
 use crate::model::{Confidence, Limit};
@@ -111,14 +112,15 @@ pub(super) static STRUCTURE: Structure = Structure {
         name: "crest tapping",
         when: "the second head is that at the crest tapping",
         definitions: &[
-            ("S", "(h_2 - k_h)/h_e"),
+            ("S", "max((h_2 - k_h)/h_e, 0)"),
             ("f_published", "1.078*(0.909 - S^1.5)^0.183"),
-            ("f", "1 when h_2 <= k_h otherwise 1 when f_published >= 1 otherwise F_f*f_published"),
+            ("f", "F_f*f_published when f_published < 1 otherwise 1"),
         ],
         needs: &[],
         beyond: None,
         limits: &[],
-        ratio: Some(0.4),
+        reads: SecondHeadAt::CrestTapping,
+        ratio: ModularRatio::Own(0.4),
         uncertainty: None,
         source: ISO_4377,
         confidence: Confidence::MemoryConfirmed,
@@ -186,7 +188,7 @@ const fn regime(
         solved: None,
         flowing: "h - k_h",
         beyond: None,
-        borders: &["h - b/(2*n)"],
+        borders: |_| &["h - b/(2*n)"],
         limits: LIMITS,
         coefficient: Coefficient::Published(CoefficientRule {
             words: "at 95 %: 10 C_V - 8 per cent, C_V = (H/h)^2.5",

@@ -1,8 +1,11 @@
 //! The equation of an installation at some values, with everything that goes with it.
 
-use super::input::{COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR};
+use super::input::{COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, Values};
 use super::installation::{Installation, SHIFTED_TAILWATER};
-use super::published::{Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, PublishedTable};
+use super::published::{
+    Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, ModularRatio, PublishedTable,
+    SecondHeadAt,
+};
 use super::structure::{Implicit, Regime, Solved, Structure};
 use crate::model::{Blueprint, Citation, Confidence, Limit, Side, UnknownText};
 use crate::units::Dimension;
@@ -25,6 +28,8 @@ pub struct Form {
     /// Where no uncertainty of the coefficient is published: the inputs that a source of the user's must
     /// act on, and why.
     pub unstated: Vec<(Vec<String>, String)>,
+    /// The documents that its numbers are to be confirmed against.
+    pub standards: Vec<&'static str>,
     /// Published numbers in the equation: what each is, and how well it is known.
     pub numbers: Vec<(String, Confidence)>,
     /// The highest tailwater above the crest at which the flow is modular; `None` for several sections.
@@ -120,7 +125,7 @@ pub(super) fn extend(to: &mut Vec<(String, String)>, definitions: &[(&str, &str)
 }
 
 /// The form of a structure that stands by itself, in one regime.
-pub(super) fn single(installation: &Installation, regime: usize) -> Form {
+pub(super) fn single(installation: &Installation, regime: usize, values: &Values) -> Form {
     let structure = installation.structure;
     let form = &structure.regimes[regime];
     let drowned = drowned_flow(installation);
@@ -133,7 +138,7 @@ pub(super) fn single(installation: &Installation, regime: usize) -> Form {
         result: "Q".to_owned(),
         flowing: Some(form.flowing.to_owned()),
         beyond: beyond(form.beyond, drowned.and_then(|drowned| drowned.beyond)),
-        borders: form.borders.iter().map(|&text| text.to_owned()).collect(),
+        borders: (form.borders)(values).iter().map(|&text| text.to_owned()).collect(),
     };
     extend(&mut blueprint.definitions, form.definitions);
     extend(&mut blueprint.definitions, factor_definitions(installation));
@@ -141,8 +146,11 @@ pub(super) fn single(installation: &Installation, regime: usize) -> Form {
     solve(form, rated && drowned.is_some(), &mut blueprint);
     let mut limits: Vec<InstalledLimit> = form.limits.iter().map(Into::into).collect();
     if installation.second_head.is_some() {
-        limits.extend(critical_limits(structure, &mut blueprint));
-        limits.push(modular_limit(structure));
+        // A tapping does not tell the level of the tailwater, and with it the energy.
+        if drowned.is_none_or(|drowned| drowned.reads == SecondHeadAt::Tailwater) {
+            limits.extend(critical_limits(structure, &mut blueprint));
+        }
+        limits.push(modular_limit(installation));
         limits.extend(drowned.iter().flat_map(|drowned| drowned.limits).map(InstalledLimit::from));
     }
     let known = |name: &str| blueprint.constants.iter().any(|(symbol, ..)| symbol == name);
@@ -156,6 +164,7 @@ pub(super) fn single(installation: &Installation, regime: usize) -> Form {
         limits,
         automatic: Vec::new(),
         unstated: Vec::new(),
+        standards: vec![structure.standard.document],
         numbers: Vec::new(),
         highest_tailwater,
         blueprint,
@@ -186,10 +195,18 @@ pub(super) fn factor_definitions(
 pub(super) fn constants(installation: &Installation) -> Vec<(String, f64, Dimension)> {
     let structure = installation.structure;
     let stated = installation.second_head.as_ref().and_then(|second| second.modular_limit);
-    let of_equation = drowned_flow(installation).and_then(|drowned| drowned.ratio);
+    let of_option = installation.constants_of_option();
+    let of_choice = |name: &str| {
+        let found = of_option.iter().find(|(symbol, _)| *symbol == name);
+        found.map(|(_, value)| *value).filter(|value| !value.is_nan())
+    };
+    let of_equation = drowned_flow(installation).and_then(|drowned| match drowned.ratio {
+        ModularRatio::OfStructure => None,
+        ModularRatio::Own(ratio) => Some(ratio),
+        ModularRatio::OfChoice(name) => of_choice(name),
+    });
     let modular_limit = stated.or(of_equation).or(structure.modular.ratio);
     let own = structure.constants.iter().map(|each| (each.symbol, each.value, each.dimension));
-    let of_option = installation.constants_of_option();
     let of_option = of_option
         .into_iter()
         // What is not published does not enter; that an equation needs it is asked beforehand.
@@ -220,8 +237,8 @@ pub(super) fn add_tailwater(installation: &Installation, blueprint: &mut Bluepri
 fn solve(form: &Regime, through_tailwater: bool, blueprint: &mut Blueprint) {
     let largest = match form.implicit {
         Implicit::Discharge => Some(super::approach::LARGEST_FLOW.to_owned()),
-        // Drowned flow is never above modular flow; a hair of room for the rounding of the two.
-        Implicit::Nothing if through_tailwater => Some("1.000001*Q_modular".to_owned()),
+        // Drowned flow is below modular flow, but for a factor on its factor in a trial.
+        Implicit::Nothing if through_tailwater => Some("2*Q_modular".to_owned()),
         Implicit::Nothing => None,
     };
     match largest {
@@ -300,8 +317,17 @@ fn critical_limits(structure: &Structure, blueprint: &mut Blueprint) -> Vec<Inst
 }
 
 /// The tailwater against the modular limit.
-pub(super) fn modular_limit(structure: &Structure) -> InstalledLimit {
-    let modular = structure.modular;
+pub(super) fn modular_limit(installation: &Installation) -> InstalledLimit {
+    let modular = installation.structure.modular;
+    let second = installation.second_head.as_ref();
+    let stated = second.is_some_and(|second| second.modular_limit.is_some());
+    let (source, confidence) = match drowned_flow(installation) {
+        _ if stated => (crate::model::source::STATION_FILE, Confidence::Seen),
+        Some(drowned) if drowned.ratio != ModularRatio::OfStructure => {
+            (drowned.source, drowned.confidence)
+        }
+        _ => (modular.source, modular.confidence),
+    };
     InstalledLimit {
         kind: LimitKind::Modular,
         quantity: "h_2".to_owned(),
@@ -309,8 +335,8 @@ pub(super) fn modular_limit(structure: &Structure) -> InstalledLimit {
         bound: modular.highest.to_owned(),
         applies: None,
         meaning: "tailwater head against the highest at which the flow is modular".to_owned(),
-        source: modular.source,
-        confidence: modular.confidence,
+        source,
+        confidence,
     }
 }
 

@@ -1,6 +1,6 @@
 //! A structure as it is installed: with its size, its second head, its sections.
 
-use super::form::{Form, single};
+use super::form::{Form, identifiers, single};
 use super::input::{
     COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, GRAVITY, HEAD, InstalledInput, TAILWATER_HEAD, Values,
 };
@@ -24,7 +24,8 @@ pub struct Installation {
 /// A section of a compound weir.
 #[derive(Clone, Debug)]
 pub struct Section {
-    /// The structure in it; it has no second head of its own.
+    /// The structure in it; its second head says which drowned-flow equation takes over, the level is that
+    /// of the whole.
     pub installation: Installation,
     /// Keys of the inputs that the file gives for it, besides those with a default.
     pub given: Vec<String>,
@@ -51,6 +52,15 @@ impl Installation {
         let word = structure.choice.map_or("", |choice| choice.example);
         let option = structure.choice.and_then(|choice| choice.find(word)).unwrap_or(0);
         Self { structure, option, second_head: None, sections }
+    }
+
+    /// Whether gravity is in its equation by itself; it is inside some published coefficients.
+    pub fn uses_gravity(&self) -> bool {
+        let in_regimes = self.structure.regimes.iter().any(|regime| {
+            let texts = regime.definitions.iter().map(|(_, text)| *text);
+            texts.chain([regime.discharge]).flat_map(identifiers).any(|name| name == GRAVITY.symbol)
+        });
+        in_regimes || !self.sections.is_empty()
     }
 
     /// Places of the drowned-flow equations that are published for it.
@@ -80,7 +90,7 @@ impl Installation {
         }
         inputs.push(GRAVITY.into());
         for (index, section) in self.sections.iter().enumerate() {
-            inputs.extend(composition::inputs(section, index + 1));
+            inputs.extend(composition::inputs(section, index + 1, self.second_head.is_some()));
         }
         if let Some(second) = &self.second_head {
             let mut tailwater = InstalledInput::from(TAILWATER_HEAD);
@@ -98,7 +108,7 @@ impl Installation {
     /// The equation that holds at indicated values, with its limits and the error sources it brings.
     pub fn form(&self, values: &Values) -> Form {
         if self.sections.is_empty() {
-            single(self, (self.structure.regime_for)(values))
+            single(self, (self.structure.regime_for)(values), values)
         } else {
             composition::form(self, values)
         }
@@ -107,7 +117,8 @@ impl Installation {
     /// Every form of the equation, for a sheet of the catalogue.
     pub fn forms(&self) -> Vec<Form> {
         if self.sections.is_empty() {
-            (0..self.structure.regimes.len()).map(|regime| single(self, regime)).collect()
+            let values = Values::default();
+            (0..self.structure.regimes.len()).map(|regime| single(self, regime, &values)).collect()
         } else {
             vec![composition::form(self, &Values::default())]
         }

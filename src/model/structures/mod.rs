@@ -23,7 +23,7 @@ pub use input::{
 pub use installation::{Installation, SecondHead, Section};
 pub use published::{
     Adjustment, Choice, Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow,
-    HeadPosition, ModularLimit, PublishedTable,
+    HeadPosition, ModularLimit, ModularRatio, PublishedTable, SecondHeadAt,
 };
 pub use structure::{Implicit, Regime, Solved, Structure};
 

@@ -2,7 +2,7 @@
 
 use super::{
     Choice, Coefficient, CoefficientRule, Constant, DrownedFlow, HeadPosition, Implicit,
-    ModularLimit, Regime, Structure,
+    ModularLimit, ModularRatio, Regime, SecondHeadAt, Structure,
 };
 use crate::model::source::{ISO_9826, PARSHALL, SKOGERBOE};
 use crate::model::{Confidence, Limit};
@@ -71,7 +71,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "h_lowest", "head, for this size")
                 .by(ISO_9826, Confidence::Memory),
@@ -91,7 +91,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         DrownedFlow {
             name: "Parshall 1936",
             when: "1 ft to 8 ft and 0.30 m to 2.40 m; the second head is read in the throat, 51 mm \
-                   upstream of its end; at the modular limit it takes off 3 % to 6 % at once",
+                   upstream of its end; at the modular limit it takes off 1 % to 6 % at once at middle \
+                   and high heads, and far more at the lowest",
             definitions: &[
                 ("S", "h_2/h"),
                 (
@@ -104,7 +105,8 @@ pub(super) static STRUCTURE: Structure = Structure {
             needs: &["b_throat"],
             beyond: None,
             limits: &[CEILING.by(PARSHALL, Confidence::Seen)],
-            ratio: None,
+            reads: SecondHeadAt::Tailwater,
+            ratio: ModularRatio::OfStructure,
             uncertainty: None,
             source: PARSHALL,
             confidence: Confidence::Memory,
@@ -119,12 +121,13 @@ pub(super) static STRUCTURE: Structure = Structure {
                     "m3_per_s*(foot/metre)^3*C_1*((h - h_2)/foot)^n_1/(-(ln(S)/ln(10) + C_2))^n_2",
                 ),
                 ("f_published", "Q_drowned/(C*m3_per_s*(h/metre)^n)"),
-                ("f", "1 when S <= S_t otherwise F_f*f_published"),
+                ("f", "1 when S <= M_L otherwise F_f*f_published"),
             ],
             needs: &["C_1"],
             beyond: None,
             limits: &[CEILING.by(PARSHALL, Confidence::Seen)],
-            ratio: None,
+            reads: SecondHeadAt::Tailwater,
+            ratio: ModularRatio::OfChoice("S_t"),
             uncertainty: None,
             source: SKOGERBOE,
             confidence: Confidence::MemoryConfirmed,

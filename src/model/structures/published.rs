@@ -117,14 +117,36 @@ pub struct DrownedFlow {
     pub beyond: Option<&'static str>,
     /// Limits of use of the equation.
     pub limits: &'static [Limit],
-    /// The published modular limit for this second head, where it is not the structure's.
-    pub ratio: Option<f64>,
+    /// Where its second head is read.
+    pub reads: SecondHeadAt,
+    /// The modular limit for this second head.
+    pub ratio: ModularRatio,
     /// The published uncertainty of the factor; `None` if the user states it.
     pub uncertainty: Option<CoefficientRule>,
     /// Who published it.
     pub source: Citation,
     /// How well it is known here.
     pub confidence: Confidence,
+}
+
+/// Where a second head is read.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum SecondHeadAt {
+    /// In the tailwater, or the throat's end.
+    Tailwater,
+    /// At a tapping in the crest.
+    CrestTapping,
+}
+
+/// The ratio of heads up to which flow is modular, `M_L`, for an equation of drowned flow.
+#[derive(Clone, Copy, Debug, PartialEq)]
+pub enum ModularRatio {
+    /// That of the structure.
+    OfStructure,
+    /// One of its own.
+    Own(f64),
+    /// A constant of the choice.
+    OfChoice(&'static str),
 }
 
 /// Up to what tailwater the flow is modular.

@@ -47,7 +47,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h - x_delta*L",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             throat::LEAST_HEAD,
             throat::LEAST_RATIO,

@@ -38,7 +38,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[super::approach::froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
         coefficient: Coefficient::FromUser(
             "the coefficient of this profile and its uncertainty are not known here: state both from \

@@ -62,9 +62,9 @@ pub struct Regime {
     pub flowing: &'static str,
     /// Positive where a published curve is left; its end is then held.
     pub beyond: Option<&'static str>,
-    /// Each is zero where another regime begins. The regime is chosen once, at the indicated values;
-    /// trials on the other side are counted.
-    pub borders: &'static [&'static str],
+    /// Expressions that are zero where another regime begins, if one can at these indicated values. The
+    /// regime is chosen once; trials on the other side are counted.
+    pub borders: fn(&Values) -> &'static [&'static str],
     /// Limits of use.
     pub limits: &'static [Limit],
     /// The published uncertainty of the coefficient.

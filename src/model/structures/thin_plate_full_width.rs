@@ -4,7 +4,7 @@
 use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
 use super::{
     Coefficient, CoefficientRule, Constant, DrownedFlow, HeadPosition, Implicit, InputSpec,
-    ModularLimit, Regime, Structure,
+    ModularLimit, ModularRatio, Regime, SecondHeadAt, Structure,
 };
 use crate::model::source::{ISO_1438, REHBOCK, VILLEMONTE};
 use crate::model::{Citation, Confidence, Limit};
@@ -48,7 +48,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     ],
     tables: &[],
     regimes: &[Regime {
-        name: "rehbock",
+        name: "Rehbock",
         when: "always",
         definitions: &[
             ("C_e", "C_0 + C_1*h/p"),
@@ -61,7 +61,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h + k_h_published + dk_h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.03", "head").by(ISO_1438, Confidence::Memory),
             Limit::at_most("h", "0.75", "head").by(ISO_1438, Confidence::Memory),
@@ -86,14 +86,14 @@ pub(super) static STRUCTURE: Structure = Structure {
     drowned: &[
         drowned(
             "ISO 1438",
-            &[ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_ISO"), FACTOR],
-            "0 when h_2 <= 0 otherwise 200/sqrt(3)*abs(f_Villemonte/f_ISO - 1)",
+            &[RATIO, ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_ISO"), FACTOR],
+            "0 when f_published >= 1 otherwise 200/sqrt(3)*abs(f_Villemonte/f_ISO - 1)",
             (ISO_1438, Confidence::MemoryConfirmed),
         ),
         drowned(
             "Villemonte",
-            &[ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_Villemonte"), FACTOR],
-            "0 when h_2 <= 0 otherwise 200/sqrt(3)*abs(f_ISO/f_Villemonte - 1)",
+            &[RATIO, ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_Villemonte"), FACTOR],
+            "0 when f_published >= 1 otherwise 200/sqrt(3)*abs(f_ISO/f_Villemonte - 1)",
             (VILLEMONTE, Confidence::Memory),
         ),
     ],
@@ -115,11 +115,12 @@ pub(super) static STRUCTURE: Structure = Structure {
     },
 };
 
-const ISO_FACTOR: (&str, &str) = ("f_ISO", "1.007*(0.975 - (h_2/h)^1.45)^0.265");
-const VILLEMONTE_FACTOR: (&str, &str) = ("f_Villemonte", "(1 - (h_2/h)^1.5)^0.385");
-/// Water below the crest drowns nothing, and no factor is above 1.
-const FACTOR: (&str, &str) =
-    ("f", "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published");
+/// Water below the crest drowns nothing.
+const RATIO: (&str, &str) = ("S", "max(h_2/h, 0)");
+const ISO_FACTOR: (&str, &str) = ("f_ISO", "1.007*(0.975 - S^1.45)^0.265");
+const VILLEMONTE_FACTOR: (&str, &str) = ("f_Villemonte", "(1 - S^1.5)^0.385");
+/// No factor is above 1.
+const FACTOR: (&str, &str) = ("f", "F_f*f_published when f_published < 1 otherwise 1");
 
 /// One of the two factors; that they differ, by 4 % at a ratio of heads of 0.5 and 13 % at 0.8, is the uncertainty of
 /// each.
@@ -137,7 +138,8 @@ const fn drowned(
         needs: &[],
         beyond: None,
         limits: &[],
-        ratio: None,
+        reads: SecondHeadAt::Tailwater,
+        ratio: ModularRatio::OfStructure,
         uncertainty: Some(CoefficientRule {
             words: "the difference of the two published factors, as the half-width of a rectangular \
                     distribution",

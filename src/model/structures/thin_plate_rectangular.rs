@@ -101,7 +101,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             solved: None,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
-            borders: &[],
+            borders: |_| &[],
             limits: &[
                 MIN_HEAD,
                 MIN_WIDTH,
@@ -128,7 +128,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             solved: None,
             flowing: "h + k_h_published + dk_h",
             beyond: None,
-            borders: &[],
+            borders: |_| &[],
             limits: &[MIN_HEAD, MIN_WIDTH, MIN_HEIGHT, MAX_RATIO],
             coefficient: COEFFICIENT,
         },

@@ -39,7 +39,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.06", "head").by(BOS, Confidence::Memory),
             Limit::at_most("h", "0.60", "head").by(BOS, Confidence::Memory),

@@ -110,7 +110,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             solved: None,
             flowing: "h + k_chart(theta) + dk_h",
             beyond: None,
-            borders: BORDERS,
+            borders,
             limits: &[
                 Limit::at_least("h", "0.06", "head").by(ISO_1438, Confidence::Memory),
                 Limit::at_most("h", "0.38", "head").by(ISO_1438, Confidence::Memory),
@@ -137,7 +137,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             solved: None,
             flowing: "h + k_h_right + dk_h",
             beyond: Some("h/p - C_end(p/B_m)"),
-            borders: BORDERS,
+            borders,
             limits: &[
                 Limit::at_least("h", "0.05", "head").by(ISO_1438, Confidence::Memory),
                 Limit::at_most("h", "0.60", "head").by(ISO_1438, Confidence::Memory),
@@ -187,13 +187,19 @@ fn regime_for(values: &Values) -> usize {
     let at_most = |value: f64, bound: f64| value <= bound * (1.0 + ROUNDING);
     let full =
         at_most(h / p, 0.4) && at_most(h / width, 0.2) && at_most(0.45, p) && at_most(0.90, width);
-    let degrees = values.value("notch_angle") / DEGREE;
-    let right = (degrees - 90.0).abs() <= RIGHT_ANGLE_TOLERANCE + 1e-9;
-    usize::from(!full && right)
+    usize::from(!full && is_right(values))
 }
 
-/// Where contraction becomes full, or partial.
-const BORDERS: &[&str] = &["h/p - 0.4", "h/B_m - 0.2"];
+/// Where contraction becomes full, or partial, for an installation in which it can.
+fn borders(values: &Values) -> &'static [&'static str] {
+    let high = values.value("crest_height") * (1.0 + ROUNDING) >= 0.45;
+    if is_right(values) && high { &["h/p - 0.4", "h/B_m - 0.2"] } else { &[] }
+}
+
+fn is_right(values: &Values) -> bool {
+    let degrees = values.value("notch_angle") / DEGREE;
+    (degrees - 90.0).abs() <= RIGHT_ANGLE_TOLERANCE + 1e-9
+}
 
 const COEFFICIENT: Coefficient = Coefficient::Published(CoefficientRule {
     words: "1.0 % at 95 % within the limits",

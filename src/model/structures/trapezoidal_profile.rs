@@ -63,7 +63,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
         coefficient: Coefficient::FromUser(
             "no uncertainty of this coefficient is known here: state one (4 % at 95 % would be prudent)",

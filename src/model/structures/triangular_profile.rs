@@ -6,7 +6,8 @@ use super::approach::{
 };
 use super::{
     Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow, HeadPosition, Implicit,
-    InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
+    InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, Regime, SecondHeadAt,
+    Structure,
 };
 use crate::model::source::{ISO_4360, ISO_4360_2008};
 use crate::model::{Confidence, Limit};
@@ -58,7 +59,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h - k_h_published",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.03", "head (smooth metal crest; 0.06 m for fine concrete)")
                 .by(ISO_4360, Confidence::Memory),
@@ -83,14 +84,11 @@ pub(super) static STRUCTURE: Structure = Structure {
             when: "the second head is that of the tailwater, whose velocity head is left out",
             definitions: &[
                 // The curve ends at 0.985: its last value is held.
-                ("S", "min(h_2/H, 0.985)"),
+                ("S", "min(max(h_2/H, 0), 0.985)"),
                 ("f_low", "1.035*(0.817 - S^4)^0.0647"),
                 ("f_high", "8.686 - 8.403*S"),
                 ("f_published", "f_low when S <= 0.93 otherwise f_high"),
-                (
-                    "f",
-                    "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published",
-                ),
+                ("f", "F_f*f_published when f_published < 1 otherwise 1"),
             ],
             needs: &[],
             beyond: Some("h_2/H - 0.985"),
@@ -100,7 +98,8 @@ pub(super) static STRUCTURE: Structure = Structure {
                 "tailwater head over total head, end of the curve",
             )
             .by(ISO_4360, Confidence::MemoryConfirmed)],
-            ratio: None,
+            reads: SecondHeadAt::Tailwater,
+            ratio: ModularRatio::OfStructure,
             uncertainty: None,
             source: ISO_4360,
             confidence: Confidence::MemoryConfirmed,
@@ -109,17 +108,15 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "crest tapping",
             when: "the second head is that at the tapping, 20 mm downstream of the crest line",
             definitions: &[
-                ("S", "h_2/H"),
+                ("S", "max(h_2/H, 0)"),
                 ("f_published", "1.04*(0.945 - S^1.5)^0.256"),
-                (
-                    "f",
-                    "1 when h_2 <= 0 otherwise 1 when f_published >= 1 otherwise F_f*f_published",
-                ),
+                ("f", "F_f*f_published when f_published < 1 otherwise 1"),
             ],
             needs: &[],
             beyond: None,
             limits: &[],
-            ratio: Some(0.24),
+            reads: SecondHeadAt::CrestTapping,
+            ratio: ModularRatio::Own(0.24),
             uncertainty: None,
             source: ISO_4360,
             confidence: Confidence::MemoryConfirmed,

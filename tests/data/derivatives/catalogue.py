@@ -987,9 +987,9 @@ def families():
     yield "m_a > 0", Spec(thin_plate_rectangular, "contracted"), rectangular_point, [], 8, None
     yield "m_a > 0", Spec(thin_plate_triangular, "partially contracted"), notch_point, [], 8, None
 
-    yield "free", Spec(thin_plate_full_width, "rehbock"), full_width_point, [], 20, None
+    yield "free", Spec(thin_plate_full_width, "Rehbock"), full_width_point, [], 20, None
     for name, modular in ("ISO 1438", [(-1.5, -0.05), (0.003, 0.008)]), ("Villemonte", [(-1.5, -0.05)]):
-        spec = Spec(thin_plate_full_width, "rehbock", drowned=name)
+        spec = Spec(thin_plate_full_width, "Rehbock", drowned=name)
         drowned = lambda d, s: full_width_point(d, s, (0.05, 0.93))
         yield f"{name}, drowned", spec, drowned, ["drowned"], 10, None
         for low, high in modular:
@@ -1088,7 +1088,7 @@ def families():
     spec = Spec(triangular_profile, profile, drowned="tailwater", **crump)
     yield "table, branch 1", spec, crump_point, ["branch 1"], 4, (0.78, 0.95)
     yield "table, branch 2", spec, crump_point, ["branch 2"], 4, (0.95, 1.05)
-    spec = Spec(thin_plate_full_width, "rehbock", drowned="ISO 1438")
+    spec = Spec(thin_plate_full_width, "Rehbock", drowned="ISO 1438")
     yield "table, ISO 1438", spec, full_width_point, ["drowned"], 6, (0.2, 0.9)
     spec = Spec(parshall_flume, "free", "1 ft", "Parshall 1936")
     yield "table, Parshall 1936", spec, parshall_point, ["drowned"], 6, (0.74, 0.92)

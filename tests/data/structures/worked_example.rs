@@ -32,7 +32,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         solved: None,
         flowing: "h",
         beyond: None,
-        borders: &[],
+        borders: |_| &[],
         limits: &[
             Limit::at_least("h", "0.04", "depth at the brink").by(PRACTICE, Confidence::Memory)
         ],
