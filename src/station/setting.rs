@@ -132,24 +132,30 @@ impl Station {
         Ok(Setting { problem, rows, form, warnings })
     }
 
-    /// The form of the structure's equation at a moment, and the corrected inputs, for a look at many
-    /// heads: nothing is built. `None` for an equation of the user's own. A tailwater that follows the
-    /// discharge is left to the rating.
+    /// Which regimes the structure's equation takes at a moment (of each section, for a compound weir), and
+    /// the corrected inputs: for a look at many heads, nothing is built. `None` for an equation of the
+    /// user's own. A tailwater that follows the discharge is left to the rating.
     ///
     /// # Errors
     ///
     /// As [`Station::at`].
-    pub fn sketch(&self, moment: Moment) -> Result<Option<(Form, Vec<f64>)>, Refusal> {
+    pub fn sketch(&self, moment: Moment) -> Result<Option<(Vec<usize>, Vec<f64>)>, Refusal> {
         self.check_moment(moment)?;
         let Kind::Catalogue(installation) = &self.kind else { return Ok(None) };
         let inputs = self.indicated_inputs(moment);
         let known = self.known(moment, &inputs);
+        let regimes = installation.regimes(&self.values(moment));
+        Ok(Some((regimes, corrected(&inputs, &known.sources))))
+    }
+
+    /// The form of the structure's equation at a moment; `None` for an equation of the user's own.
+    pub fn form(&self, moment: Moment) -> Option<Form> {
+        let Kind::Catalogue(installation) = &self.kind else { return None };
         let mut installation = installation.as_ref().clone();
         if moment.tailwater.is_some() {
             set_rating(&mut installation, None);
         }
-        let form = installation.form(&self.values(moment));
-        Ok(Some((form, corrected(&inputs, &known.sources))))
+        Some(installation.form(&self.values(moment)))
     }
 
     fn check_moment(&self, moment: Moment) -> Result<(), Refusal> {

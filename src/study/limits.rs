@@ -1,6 +1,7 @@
 //! Limits at one head: what is there against what a standard, the hydraulics and the station allow.
 
 use crate::diagnostic::{Code, Warning};
+use crate::model::expression::Id;
 use crate::model::structures::{Form, InstalledLimit, LimitKind};
 use crate::model::{Confidence, Model, Side};
 use crate::station::{Moment, Station};
@@ -26,22 +27,42 @@ pub struct LimitState {
     pub fails_at: Option<Vec<[f64; 2]>>,
 }
 
-/// The limits of a form at given values of the inputs; those that do not apply there are left out.
-pub(super) fn limit_states(model: &mut Model, form: &Form, inputs: &[f64]) -> Vec<LimitState> {
+/// For each limit of a form its quantity, its bound, and what is positive where it applies.
+pub(super) fn limit_expressions(model: &mut Model, form: &Form) -> Vec<Id> {
+    let mut read = |text: &str| {
+        // A limit of the catalogue always reads; a test holds it so.
+        model.expression(text).map_or_else(|_| model.result(), |(id, _)| id)
+    };
     form.limits
         .iter()
-        .filter_map(|limit| {
-            // A limit of the catalogue always reads; a test holds it so.
-            let (quantity, dimension) = model.expression(&limit.quantity).ok()?;
-            let (bound, _) = model.expression(&limit.bound).ok()?;
-            let applies = match &limit.applies {
-                Some(text) => model.expression(text).ok()?.0,
-                None => quantity,
-            };
-            let (values, _) = model.evaluate(&[quantity, bound, applies], inputs);
-            let [value, bound, applies] = [values[0], values[1], values[2]];
-            let stands = limit.applies.is_none() || applies > 0.0;
-            stands.then(|| LimitState {
+        .flat_map(|limit| {
+            let quantity = read(&limit.quantity);
+            let applies = limit.applies.as_deref().map_or(quantity, &mut read);
+            [quantity, read(&limit.bound), applies]
+        })
+        .collect()
+}
+
+/// The values of [`limit_expressions`], limit by limit, those that do not apply left out.
+pub(super) fn limit_values<'v>(
+    form: &'v Form,
+    values: &'v [f64],
+) -> impl Iterator<Item = (&'v InstalledLimit, Option<[f64; 2]>)> {
+    form.limits.iter().zip(values.chunks(3)).map(|(limit, values)| {
+        let stands = limit.applies.is_none() || values[2] > 0.0;
+        (limit, stands.then_some([values[0], values[1]]))
+    })
+}
+
+/// The limits of a form at given values of the inputs; those that do not apply there are left out.
+pub(super) fn limit_states(model: &mut Model, form: &Form, inputs: &[f64]) -> Vec<LimitState> {
+    let expressions = limit_expressions(model, form);
+    let (values, _) = model.evaluate(&expressions, inputs);
+    limit_values(form, &values)
+        .filter_map(|(limit, values)| {
+            let [value, bound] = values?;
+            let (_, dimension) = model.expression(&limit.quantity).ok()?;
+            Some(LimitState {
                 limit: limit.clone(),
                 value,
                 bound,

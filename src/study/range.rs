@@ -4,7 +4,7 @@ use crate::model::structures::{Form, InstalledLimit};
 use crate::model::{Model, Outcome, Program};
 use crate::station::{Moment, Station};
 
-use super::limits::LimitState;
+use super::limits::{LimitState, limit_expressions, limit_values};
 
 /// Heads at which the range is looked at; what happens between two of them twice is not seen.
 const HEADS: usize = 65;
@@ -17,6 +17,7 @@ pub(super) type Failing = (InstalledLimit, Vec<[f64; 2]>);
 /// A form of the equation, compiled for its limits.
 struct Compiled {
     form: Form,
+    regimes: Vec<usize>,
     program: Program,
 }
 
@@ -67,21 +68,21 @@ impl Sweep<'_> {
     /// Which form holds at a head, and which of its limits are kept there.
     fn kept_at(&mut self, head: f64) -> Option<(usize, Vec<bool>)> {
         let moment = Moment { head: Some(head), ..self.moment };
-        let (form, inputs) = self.station.sketch(moment).ok()??;
-        let known = self.compiled.iter().position(|each| each.form.regime == form.regime);
+        let (regimes, inputs) = self.station.sketch(moment).ok()??;
+        let known = self.compiled.iter().position(|each| each.regimes == regimes);
         let index = if let Some(index) = known {
             index
         } else {
-            self.compiled.push(compile(form, &inputs)?);
+            let form = self.station.form(moment)?;
+            self.compiled.push(compile(form, regimes, &inputs)?);
             self.compiled.len() - 1
         };
-        let Compiled { form, program } = &self.compiled[index];
+        let Compiled { form, program, .. } = &self.compiled[index];
         let (values, outcome) = program.evaluate(&inputs);
-        let kept = form.limits.iter().zip(values.chunks(3)).map(|(limit, values)| {
-            let [quantity, bound, applies] = [values[0], values[1], values[2]];
+        let kept = limit_values(form, &values).map(|(limit, values)| {
             // Where nothing flows, there is nothing to hold against the limits.
-            let stands = limit.applies.is_none() || applies > 0.0;
-            !stands || outcome == Outcome::Dry || limit.side.allows(quantity, bound)
+            let stands = values.filter(|_| outcome != Outcome::Dry);
+            stands.is_none_or(|[quantity, bound]| limit.side.allows(quantity, bound))
         });
         Some((index, kept.collect()))
     }
@@ -135,21 +136,12 @@ impl Sweep<'_> {
     }
 }
 
-fn compile(form: Form, inputs: &[f64]) -> Option<Compiled> {
+fn compile(form: Form, regimes: Vec<usize>, inputs: &[f64]) -> Option<Compiled> {
     let mut model = Model::build(&form.blueprint).ok()?;
-    let mut outputs = Vec::new();
-    for limit in &form.limits {
-        let quantity = model.expression(&limit.quantity).ok()?.0;
-        outputs.push(quantity);
-        outputs.push(model.expression(&limit.bound).ok()?.0);
-        outputs.push(match &limit.applies {
-            Some(text) => model.expression(text).ok()?.0,
-            None => quantity,
-        });
-    }
+    let outputs = limit_expressions(&mut model, &form);
     let free = vec![None; model.inputs().len()];
     let program = Program::compile(&mut model, &outputs, &free, inputs);
-    Some(Compiled { form, program })
+    Some(Compiled { form, regimes, program })
 }
 
 /// Joins intervals of neighbouring forms that meet.

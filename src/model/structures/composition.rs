@@ -190,6 +190,16 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
     result
 }
 
+/// Which regime holds in each section.
+pub(super) fn regimes(installation: &Installation, values: &Values) -> Vec<usize> {
+    let sections = installation.sections.iter().zip(1..);
+    sections.map(|(section, number)| regime(section, &section_values(values, number))).collect()
+}
+
+fn regime(section: &Section, values: &Values) -> usize {
+    (section.installation.structure.regime_for)(values)
+}
+
 /// What a section adds to the conditions of the whole.
 struct Added {
     regime: &'static str,
@@ -208,7 +218,7 @@ fn add_section(
     let installation = &installed(section, tailwater_known);
     let structure = installation.structure;
     let own_values = section_values(values, number);
-    let regime = &structure.regimes[(structure.regime_for)(&own_values)];
+    let regime = &structure.regimes[regime(section, &own_values)];
     let drowned = drowned_flow(installation);
     let inputs = inputs(section, number, tailwater_known);
     let mut own: BTreeSet<String> = ["Q", "h", "h_2"].into_iter().map(str::to_owned).collect();

@@ -17,7 +17,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     title: "Compound weir of several sections",
     standard: ISO_14139,
     inputs: &[
-        InputSpec { example: "3.00 m", ..APPROACH_WIDTH },
+        InputSpec { example: "3.20 m", ..APPROACH_WIDTH },
         InputSpec::length(
             "crest_height",
             "p",

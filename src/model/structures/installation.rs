@@ -114,6 +114,15 @@ impl Installation {
         }
     }
 
+    /// Which regimes hold at indicated values: the structure's, or that of each section.
+    pub fn regimes(&self, values: &Values) -> Vec<usize> {
+        if self.sections.is_empty() {
+            vec![(self.structure.regime_for)(values)]
+        } else {
+            composition::regimes(self, values)
+        }
+    }
+
     /// Every form of the equation, for a sheet of the catalogue.
     pub fn forms(&self) -> Vec<Form> {
         if self.sections.is_empty() {
