@@ -180,11 +180,15 @@ impl Program {
 
     /// Values of all outputs for one set of inputs, which are all given in full.
     pub fn evaluate(&self, inputs: &[f64]) -> (Vec<f64>, Outcome) {
-        let mut workspace = self.workspace();
-        self.fill(&mut workspace, inputs);
+        self.evaluate_in(&mut self.workspace(), inputs)
+    }
+
+    /// The same in a workspace that is used again and again.
+    pub fn evaluate_in(&self, workspace: &mut Workspace, inputs: &[f64]) -> (Vec<f64>, Outcome) {
+        self.fill(workspace, inputs);
         let mut outcomes = [Outcome::Value; BLOCK];
-        self.run(&mut workspace, 1, &mut outcomes);
-        let values = (0..self.outputs.len()).map(|k| self.output(&workspace, k)[0]).collect();
+        self.run(workspace, 1, &mut outcomes);
+        let values = (0..self.outputs.len()).map(|k| self.output(workspace, k)[0]).collect();
         (values, outcomes[0])
     }
 

@@ -1,7 +1,7 @@
 //! Limits over the whole range of heads: the heads at which each is not kept.
 
 use crate::model::structures::{Form, InstalledLimit};
-use crate::model::{Model, Outcome, Program};
+use crate::model::{Model, Outcome, Program, Workspace};
 use crate::station::{Moment, Station};
 
 use super::limits::{LimitState, limit_expressions, limit_values};
@@ -19,6 +19,7 @@ struct Compiled {
     form: Form,
     regimes: Vec<usize>,
     program: Program,
+    workspace: Workspace,
 }
 
 /// Looks at a station over its range of heads.
@@ -77,8 +78,8 @@ impl Sweep<'_> {
             self.compiled.push(compile(form, regimes, &inputs)?);
             self.compiled.len() - 1
         };
-        let Compiled { form, program, .. } = &self.compiled[index];
-        let (values, outcome) = program.evaluate(&inputs);
+        let Compiled { form, program, workspace, .. } = &mut self.compiled[index];
+        let (values, outcome) = program.evaluate_in(workspace, &inputs);
         let kept = limit_values(form, &values).map(|(limit, values)| {
             // Where nothing flows, there is nothing to hold against the limits.
             let stands = values.filter(|_| outcome != Outcome::Dry);
@@ -141,7 +142,8 @@ fn compile(form: Form, regimes: Vec<usize>, inputs: &[f64]) -> Option<Compiled> 
     let outputs = limit_expressions(&mut model, &form);
     let free = vec![None; model.inputs().len()];
     let program = Program::compile(&mut model, &outputs, &free, inputs);
-    Some(Compiled { form, regimes, program })
+    let workspace = program.workspace();
+    Some(Compiled { form, regimes, program, workspace })
 }
 
 /// Joins intervals of neighbouring forms that meet.
