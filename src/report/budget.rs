@@ -57,11 +57,8 @@ fn capitalised(text: &str) -> String {
 }
 
 fn what_it_is(budget: &Budget) -> String {
-    let mut text = budget.title.clone();
-    if !budget.regime.is_empty() {
-        text = format!("{text}, {}", budget.regime);
-    }
-    if budget.standard.is_empty() { text } else { format!("{text}; {}", budget.standard) }
+    let text = &budget.title;
+    if budget.standard.is_empty() { text.clone() } else { format!("{text}; {}", budget.standard) }
 }
 
 fn where_it_is(budget: &Budget, units: UnitSystem) -> String {

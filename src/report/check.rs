@@ -20,7 +20,7 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
             "No range of heads is stated: [head] range would have it checked at both ends.",
         );
     } else {
-        page.table(&["#indicated head", "#result", "limits of use that are not kept"], rows);
+        page.table(&["#indicated head", "#result", "limits that are not kept"], rows);
     }
     match &check.failing {
         Some(failing) if failing.is_empty() => {

@@ -238,7 +238,7 @@ pub fn budget(
         Some((part, shares)) => (Some(part), Some(shares)),
         None => (None, None),
     };
-    let kind = kind_words(station);
+    let kind = kind_words(station, setting.form.as_ref());
     let rows = rows(&setting, &linear, shares.as_deref(), &limits, &corrected);
     Ok(Budget {
         station: station.name.clone(),
@@ -271,13 +271,19 @@ pub fn budget(
     })
 }
 
-fn kind_words(station: &Station) -> (String, String, String) {
+/// The kind, what it is in words, its standard.
+fn kind_words(station: &Station, form: Option<&Form>) -> (String, String, String) {
     match &station.kind {
-        Kind::Catalogue(installation) => (
-            installation.structure.kind.to_owned(),
-            installation.structure.title.to_owned(),
-            installation.structure.standard.document.to_owned(),
-        ),
+        Kind::Catalogue(installation) => {
+            let structure = installation.structure;
+            // The only form that there is goes without saying.
+            let says = structure.regimes.len() > 1 || !installation.sections.is_empty();
+            let title = match form.filter(|_| says) {
+                Some(form) => format!("{}, {}", structure.title, form.regime),
+                None => structure.title.to_owned(),
+            };
+            (structure.kind.to_owned(), title, structure.standard.document.to_owned())
+        }
         Kind::Own(_) => {
             ("equation".to_owned(), "An equation of the station's own".to_owned(), String::new())
         }

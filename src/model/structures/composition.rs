@@ -170,11 +170,16 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
     for (index, section) in installation.sections.iter().enumerate() {
         let number = index + 1;
         let added = add_section(installation, section, number, values, &mut result);
-        regimes.push(format!("{number}: {}", added.regime));
+        let structure = section.installation.structure;
+        let mut words = format!("{number}: {}", structure.kind);
+        if structure.regimes.len() > 1 {
+            words = format!("{words}, {}", added.regime);
+        }
+        regimes.push(words);
         flowing.push(added.flowing);
         beyond.extend(added.beyond);
     }
-    result.regime = format!("sections {}", regimes.join("; "));
+    result.regime = regimes.join("; ");
     let sum: Vec<String> = (1..=installation.sections.len()).map(|n| numbered("Q", n)).collect();
     let discharge = UnknownText {
         name: "Q".to_owned(),
