@@ -150,6 +150,10 @@ codes! {
     NoHeadSource = "no_head_source",
     /// A coefficient of which no uncertainty is published, and no source of the file acts on it.
     NoCoefficientSource = "no_coefficient_source",
+    /// A factor on a published coefficient without evidence.
+    BareFactor = "bare_factor",
+    /// The head asked about is not in the station's range.
+    OutsideRange = "outside_range",
     /// The tailwater is above the modular limit and the structure has no equation for drowned flow.
     NotModular = "not_modular",
     /// The tailwater is above the modular limit: the equation for drowned flow is used.

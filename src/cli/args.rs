@@ -87,19 +87,19 @@ pub(super) struct BudgetArgs {
     #[arg(long, value_name = "HEAD", allow_hyphen_values = true, value_parser = length)]
     pub(super) head: Option<f64>,
     /// Corrected flow, such as "20 l/s", at whose head the budget is drawn up.
-    #[arg(long, value_name = "FLOW", conflicts_with = "head", value_parser = discharge)]
+    #[arg(long, value_name = "FLOW", conflicts_with = "head", value_parser = discharge, allow_hyphen_values = true)]
     pub(super) flow: Option<f64>,
     /// Month, 1 to 12, for sources that are there in some months only.
     #[arg(long, value_parser = clap::value_parser!(u32).range(1..=12))]
     pub(super) month: Option<u32>,
     /// Indicated head of the tailwater above the crest, in place of what [tailwater] says.
-    #[arg(long, value_name = "HEAD", value_parser = length, allow_hyphen_values = true)]
+    #[arg(long, value_name = "HEAD", value_parser = tailwater, allow_hyphen_values = true)]
     pub(super) tailwater: Option<f64>,
     /// Monte Carlo trials: a number, `auto` (as many as two digits need) or 0 (none).
-    #[arg(long, default_value = "auto", value_parser = trials)]
+    #[arg(long, default_value = "auto", value_parser = trials, allow_hyphen_values = true)]
     pub(super) trials: Trials,
     /// Seed of the random numbers: the same seed gives the same bits.
-    #[arg(long, default_value_t = 1)]
+    #[arg(long, default_value_t = 1, allow_hyphen_values = true)]
     pub(super) seed: u64,
     /// Coverage probability, such as "95 %".
     #[arg(long, value_name = "PROBABILITY", value_parser = probability)]
@@ -206,6 +206,16 @@ fn quantity(text: &str, dimension: Dimension) -> Result<f64, String> {
 
 fn length(text: &str) -> Result<f64, String> {
     quantity(text, Dimension::LENGTH)
+}
+
+fn tailwater(text: &str) -> Result<f64, String> {
+    let level = length(text)?;
+    let [low, high] = crate::model::structures::TAILWATER_HEAD.domain;
+    if (low..=high).contains(&level) {
+        Ok(level)
+    } else {
+        Err(format!("a level between {low} m and {high} m above the crest is due"))
+    }
 }
 
 fn discharge(text: &str) -> Result<f64, String> {

@@ -28,9 +28,11 @@ impl From<Refusal> for Failure {
             | Refusal::NoTailwater
             | Refusal::TailwaterNotRead
             | Refusal::Equation(_) => Self::BadQuestion(refusal.to_string()),
-            Refusal::Dry(_) | Refusal::NoSolution(_) | Refusal::NoHeadForFlow { .. } => {
-                Self::CannotBeStated(refusal)
-            }
+            Refusal::Dry(_)
+            | Refusal::NoSolution(_)
+            | Refusal::TailwaterAbove { .. }
+            | Refusal::FlowJumps { .. }
+            | Refusal::NoHeadForFlow { .. } => Self::CannotBeStated(refusal),
         }
     }
 }

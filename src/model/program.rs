@@ -225,6 +225,12 @@ impl Watched {
 /// another likewise.
 fn start_steps(steps: &mut [Step], tables: &[Table], registers: &mut Registers) {
     for index in 0..steps.len() {
+        if let Step { to, operation: Operation::Solve(solve) } = &mut steps[index] {
+            // Solves inside start from the lower bound of this one: otherwise each of its steps would search
+            // their whole range.
+            registers.lanes[*to as usize][0] = registers.lanes[solve.lower as usize][0];
+            start_steps(&mut solve.body, tables, registers);
+        }
         registers.run(&steps[index..=index], tables, &(0..1), false);
         let Step { to, operation: Operation::Solve(solve) } = &mut steps[index] else { continue };
         let solution = registers.lanes[*to as usize][0];

@@ -27,19 +27,30 @@ pub(super) fn smallest_root(
         let share = f64::from(cell) / f64::from(CELLS);
         let right = if cell == CELLS { upper } else { lower + (upper - lower) * share };
         let (next, next_slope) = residual(right);
-        if value * next <= 0.0 {
-            return bracketed_newton(residual, left, right, value);
-        }
-        // The value first runs towards zero and then away from it: there may be two roots inside.
-        if value * slope < 0.0
-            && next * next_slope > 0.0
-            && let Some(dip) = turning_point(residual, left, right, value)
+        let end = if value * next <= 0.0 {
+            Some(right)
+        } else if value * slope < 0.0 && next * next_slope > 0.0 {
+            // The value first runs towards zero and then away from it: there may be two roots inside.
+            turning_point(residual, left, right, value)
+        } else {
+            None
+        };
+        if let Some(end) = end
+            && let Some(root) = bracketed_newton(residual, left, end, value)
+            && is_root(residual, root, value.abs().max(next.abs()))
         {
-            return bracketed_newton(residual, left, dip, value);
+            return Some(root);
         }
         (left, value, slope) = (right, next, next_slope);
     }
     None
+}
+
+/// A change of sign is no root where the residual jumps over zero: it is then far from it on both sides.
+fn is_root(residual: &mut dyn FnMut(f64) -> (f64, f64), at: f64, around: f64) -> bool {
+    const SMALL: f64 = 1e-4;
+
+    residual(at).0.abs() <= SMALL * around
 }
 
 /// The point between where the residual turns, if it has crossed zero there.
@@ -120,6 +131,15 @@ mod tests {
         let mut close = |x: f64| ((x - 0.5001) * (x - 0.5002), 2.0 * x - 1.0003);
         let root = smallest_root(&mut close, 0.0, 1.0).unwrap();
         assert!((root - 0.5001).abs() < 1e-12, "{root}");
+    }
+
+    #[test]
+    fn a_jump_over_zero_is_no_root() {
+        let mut step = |x: f64| (if x < 0.3 { -0.1 } else { x }, 1.0);
+        assert_eq!(smallest_root(&mut step, 0.0, 1.0), None);
+        // A root that comes after the jump is found.
+        let mut later = |x: f64| (if x < 0.3 { -0.1 } else { 0.7 - x }, -1.0);
+        assert!((smallest_root(&mut later, 0.0, 1.0).unwrap() - 0.7).abs() < 1e-15);
     }
 
     #[test]

@@ -8,6 +8,10 @@ use serde::Serialize;
 pub enum Confidence {
     /// Seen in the source named, or recomputed from figures that were.
     Seen,
+    /// Derived from first principles, quoted from nobody.
+    Derived,
+    /// Stated by the station file.
+    Stated,
     /// Quoted from memory, and confirmed by a second route (a limiting case, another formula).
     MemoryConfirmed,
     /// Quoted from memory: confirm against your copy of the standard.
@@ -21,6 +25,8 @@ impl Confidence {
     pub fn words(self) -> &'static str {
         match self {
             Self::Seen => "seen in the source",
+            Self::Derived => "derived",
+            Self::Stated => "as stated",
             Self::MemoryConfirmed => "from memory, confirmed by a second route",
             Self::Memory => "from memory",
             Self::Doubtful => "from memory, doubtful",

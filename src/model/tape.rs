@@ -13,7 +13,7 @@ pub const BLOCK: usize = 512;
 
 pub(super) type Lanes = [f64; BLOCK];
 /// A register's number.
-pub(super) type Register = u16;
+pub(super) type Register = u32;
 
 /// One operation. The target is never one of its operands.
 #[derive(Clone, Debug)]
@@ -206,6 +206,7 @@ impl Registers {
             let lanes = x.iter().zip(unsettled).zip(steps.zip(bounds));
             for ((x, unsettled), ((residual, slope), (lower, upper))) in lanes {
                 let settled = (residual / slope).abs() <= SETTLED * x.abs();
+                // Where the sign is not known yet, the search below decides.
                 let meant = slope * solve.rising > 0.0;
                 *unsettled = !(settled && meant && *lower <= *x && *x <= *upper);
                 any |= *unsettled;

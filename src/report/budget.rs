@@ -6,8 +6,8 @@ use super::rounding::rounded;
 use super::{CAUTION, FROM_MEMORY, UnitSystem};
 use crate::propagation::{Coverage, DegreesOfFreedom};
 use crate::station::Evidence;
-use crate::study::{Budget, BudgetRow, Correction, FlowState, Hydraulics, InputRow};
-use crate::units::{Unit, significant, with_unit};
+use crate::study::{Budget, BudgetRow, Correction, EquationRow, FlowState, Hydraulics, InputRow};
+use crate::units::{Dimension, Unit, significant, with_unit};
 
 /// Lays out a budget.
 pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
@@ -40,7 +40,8 @@ pub fn budget_document(budget: &Budget, units: UnitSystem) -> Document {
          uncertainty. Shares: linear; by Monte Carlo alone (first order) and with interactions (total).",
     );
     input_table(&mut page, budget);
-    page.lines(budget.equations.iter().map(|(name, text)| format!("{name} = {text}")));
+    page.lines(budget.equations.iter().map(equation_line));
+    number_table(&mut page, budget);
     hydraulics(&mut page, budget);
     limit_table(&mut page, budget);
     if budget.rows.iter().any(|row| row.published.is_some()) || !budget.limits.is_empty() {
@@ -384,6 +385,21 @@ fn input_table(page: &mut Document, budget: &Budget) {
     page.table(&["input", "symbol", "as stated", "#indicated", "#corrected", "evidence"], rows);
 }
 
+fn equation_line(row: &EquationRow) -> String {
+    let EquationRow { name, text, value, unit } = row;
+    match value {
+        Some(value) => format!("{name} = {text}  =  {}", with_unit(significant(*value, 6), unit)),
+        None => format!("{name} = {text}"),
+    }
+}
+
+fn number_table(page: &mut Document, budget: &Budget) {
+    if !budget.numbers.is_empty() {
+        let rows = budget.numbers.iter().map(|cells| cells.to_vec()).collect();
+        page.table(&["published number in the equation", "source", "confidence"], rows);
+    }
+}
+
 fn limit_table(page: &mut Document, budget: &Budget) {
     if budget.limits.is_empty() {
         return;
@@ -401,10 +417,10 @@ fn limit_table(page: &mut Document, budget: &Budget) {
                 format!("{} {}", limit.side.sign(), number(state.bound)),
                 number(state.margin),
                 if state.kept { "kept".to_owned() } else { "NOT KEPT".to_owned() },
-                state
-                    .fails_at
-                    .as_ref()
-                    .map_or_else(|| "-".to_owned(), |heads| heads_in_words(heads)),
+                state.fails_at.as_ref().map_or_else(
+                    || "-".to_owned(),
+                    |heads| heads_in_words(heads, &Unit::si(Dimension::LENGTH)),
+                ),
                 format!("{}, {}", limit.source.document, limit.confidence.words()),
             ]
         })

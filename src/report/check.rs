@@ -11,8 +11,10 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
     let mut page = Document::default();
     page.title(check.station.clone());
     page.paragraph(format!(
-        "The file reads without error: {}, {} stated sources and {} published ones.",
-        check.kind, check.stated_sources, check.automatic_sources
+        "The file reads without error: {}, {} stated and {} published.",
+        check.kind,
+        counted(check.stated_sources),
+        check.automatic_sources
     ));
     let rows: Vec<Vec<String>> = check.ends.iter().map(|end| row(end, check, units)).collect();
     if rows.is_empty() {
@@ -24,13 +26,16 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
     }
     match &check.failing {
         Some(failing) if failing.is_empty() => {
-            page.paragraph("Every limit is kept at every head of the range.");
+            page.paragraph("Every limit that is tested is kept at every head of the range.");
         }
         Some(failing) => {
-            let rows = failing.iter().map(failing_row).collect();
+            let rows = failing.iter().map(|each| failing_row(each, units)).collect();
             page.table(&["limit", "what it is", "heads at which it is not kept", "source"], rows);
         }
         None => {}
+    }
+    if check.modular_not_tested {
+        page.paragraph("Modular flow is not tested: the file states no [tailwater].");
     }
     for misfit in &check.misfits {
         page.paragraph(format!("NOT KEPT: {}", limit_in_words(misfit)));
@@ -39,12 +44,12 @@ pub fn check_document(check: &Check, units: UnitSystem) -> Document {
     page
 }
 
-fn failing_row(failing: &FailingLimit) -> Vec<String> {
+fn failing_row(failing: &FailingLimit, units: UnitSystem) -> Vec<String> {
     let limit = &failing.limit;
     vec![
         format!("{} {} {}", limit.quantity, limit.side.sign(), limit.bound),
         limit.meaning.clone(),
-        heads_in_words(&failing.heads),
+        heads_in_words(&failing.heads, &units.head()),
         format!("{}, {}", limit.source.document, limit.confidence.words()),
     ]
 }
@@ -53,8 +58,9 @@ fn limit_in_words(state: &LimitState) -> String {
     let number = |value: f64| with_unit(significant(value, 3), &state.unit);
     let limit = &state.limit;
     format!(
-        "{} = {}, limit {} {} ({})",
+        "{} ({}) = {}, limit {} {} ({})",
         limit.quantity,
+        limit.meaning,
         number(state.value),
         limit.side.sign(),
         number(state.bound),
@@ -80,6 +86,14 @@ fn row(end: &CheckedEnd, check: &Check, units: UnitSystem) -> Vec<String> {
         Err(refusal) => refusal.to_string(),
     };
     let broken: Vec<String> = end.broken.iter().map(limit_in_words).collect();
-    let broken = if broken.is_empty() { "none".to_owned() } else { broken.join("; ") };
+    let broken = match (&end.result, broken.is_empty()) {
+        (Err(_), _) => "not tested".to_owned(),
+        (Ok(_), true) => "none".to_owned(),
+        (Ok(_), false) => broken.join("; "),
+    };
     vec![head, result, broken]
+}
+
+fn counted(sources: usize) -> String {
+    if sources == 1 { "1 source".to_owned() } else { format!("{sources} sources") }
 }

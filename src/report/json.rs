@@ -3,9 +3,8 @@
 use schemars::JsonSchema;
 use serde::Serialize;
 
-use crate::model::structures::LimitKind;
 use crate::propagation::DegreesOfFreedom;
-use crate::study::{Budget, BudgetRow, FlowState, Hydraulics, LimitState, Sheet};
+use crate::study::{Asked, Budget, BudgetRow, FlowState, Hydraulics, LimitState, Sheet};
 
 /// A budget, as `--format json` prints it.
 #[derive(Debug, Serialize, JsonSchema)]
@@ -227,6 +226,10 @@ struct EquationJson {
     name: String,
     /// Right-hand side.
     text: String,
+    /// Its value at the corrected inputs, in SI units; null where it has none.
+    value: Option<f64>,
+    /// The SI unit.
+    unit: String,
 }
 
 /// A caveat.
@@ -278,17 +281,17 @@ struct HydraulicsJson {
     tailwater_head_m: Option<f64>,
     /// The highest tailwater at which the flow is modular; null where sections differ or none is known.
     highest_modular_tailwater_head_m: Option<f64>,
-    /// The drowned-flow factor in force; null where there is none.
+    /// The drowned-flow factor in force; null where there is none, and for several sections.
     drowned_flow_factor: Option<f64>,
 }
 
 fn limit_value(state: &LimitState) -> LimitJson {
     let limit = &state.limit;
-    let kind = match limit.kind {
-        LimitKind::Use => "use",
-        LimitKind::Modular => "modular",
-        LimitKind::Critical => "critical",
-        LimitKind::Station => "station",
+    let kind = match state.asked {
+        Asked::Use => "use",
+        Asked::Modular { .. } => "modular",
+        Asked::Critical => "critical",
+        Asked::Maximum | Asked::Gauge => "station",
     };
     LimitJson {
         kind: kind.to_owned(),
@@ -416,7 +419,12 @@ fn budget_value(budget: &Budget) -> BudgetJson {
         equations: budget
             .equations
             .iter()
-            .map(|(name, text)| EquationJson { name: name.clone(), text: text.clone() })
+            .map(|row| EquationJson {
+                name: row.name.clone(),
+                text: row.text.clone(),
+                value: row.value,
+                unit: row.unit.clone(),
+            })
             .collect(),
         limits: budget.limits.iter().map(limit_value).collect(),
         hydraulics: budget.hydraulics.as_ref().map(hydraulics_value),

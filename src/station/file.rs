@@ -14,6 +14,7 @@ use super::spread::Spread;
 use super::structure::{self, Kind, StationInput, StructureSection};
 use super::tailwater::{self, Tailwater};
 use crate::diagnostic::{Code, Diagnostic, Severity, Span, Warning};
+use crate::model::structures::{COEFFICIENT_FACTOR, Unstated};
 use crate::propagation::{Correlation, Distribution, Problem, Source, impossible};
 
 /// A station, read and checked.
@@ -212,6 +213,7 @@ fn read_text(text: &str, findings: &mut Findings<'_>) -> Option<Station> {
     let mut warnings = warnings(&sources, &inputs, &unused);
     warnings.extend(misplaced_replacements(&replaceable, &sources, &inputs));
     warnings.extend(unstated(&kind, &sources, &inputs));
+    warnings.extend(bare_factors(&sources, &inputs));
     let correlations = stated.into_iter().map(|each| (each.names, each.coefficient)).collect();
     let head = reads_head.then(|| head.unwrap_or_default());
     Some(Station {
@@ -490,13 +492,34 @@ fn unstated(kind: &Kind, sources: &[ErrorSource], inputs: &[StationInput]) -> Ve
     installation
         .unstated()
         .into_iter()
-        .filter(|(keys, _)| !keys.iter().any(acted_on))
-        .map(|(keys, why)| {
-            let keys: Vec<String> = keys.iter().map(|key| format!("`{key}`")).collect();
-            Warning::new(
-                Code::NoCoefficientSource,
-                format!("no source acts on {}: {why}", keys.join(" or ")),
-            )
+        // What counts in drowned flow only is said where the flow is drowned.
+        .filter(|each| !each.when_drowned && !each.inputs.iter().any(acted_on))
+        .map(|each| unstated_warning(&each))
+        .collect()
+}
+
+/// The warning of a coefficient that no source acts on.
+pub(crate) fn unstated_warning(unstated: &Unstated) -> Warning {
+    let keys: Vec<String> = unstated.inputs.iter().map(|key| format!("`{key}`")).collect();
+    let text = format!("no source acts on {}: {}", keys.join(" or "), unstated.why);
+    Warning::new(Code::NoCoefficientSource, text)
+}
+
+/// A factor on a published coefficient that nothing stands behind.
+fn bare_factors(sources: &[ErrorSource], inputs: &[StationInput]) -> Vec<Warning> {
+    let calibrated = sources.iter().any(|source| source.replaces.is_some());
+    inputs
+        .iter()
+        .filter(|input| input.key.ends_with(COEFFICIENT_FACTOR.key) && !calibrated)
+        .filter(|input| input.value.is_some_and(|value| value != 1.0))
+        .filter(|input| input.evidence.evidence.is_none())
+        .map(|input| {
+            let text = format!(
+                "`{}` is {} with nothing behind it, and the published uncertainty is still that of the \
+                 published coefficient: state its evidence, or the calibration as a source that replaces it",
+                input.key, input.text
+            );
+            Warning::new(Code::BareFactor, text)
         })
         .collect()
 }

@@ -19,11 +19,11 @@ mod structure;
 mod tailwater;
 mod template;
 
-pub(crate) use file::too_large;
 pub use file::{MAX_BYTES, Station, read};
+pub(crate) use file::{too_large, unstated_warning};
 pub use head::Head;
 pub use quantity::Stated;
-pub use setting::{Moment, Refusal, Setting, SourceRow};
+pub use setting::{Moment, Refusal, Setting, Sketch, SourceRow};
 pub use size::{Amount, Size};
 pub use source::{ErrorSource, FixedUntil};
 pub use spread::{Shape, Spread, Width};

@@ -9,7 +9,7 @@ use super::structure::{Evidence, Kind, StationInput, mean, standard_deviation};
 use super::tailwater::Tailwater;
 use crate::diagnostic::{Code, Warning};
 use crate::model::structures::{
-    AutomaticSource, Form, Installation, SecondHead, TAILWATER_HEAD, Values,
+    AutomaticSource, Form, Installation, SecondHead, TAILWATER_HEAD, TailwaterCurve, Values,
 };
 use crate::model::{Citation, Confidence, Fault, Model, Outcome};
 use crate::propagation::{Action, Correlation, Distribution, Effect, Problem, Source, corrected};
@@ -36,6 +36,15 @@ pub struct Moment {
     pub tailwater: Option<f64>,
     /// The month, 1 to 12, whose sources count; `None`: all.
     pub month: Option<u32>,
+}
+
+/// A station at one head, nothing built.
+#[derive(Clone, Debug, PartialEq)]
+pub struct Sketch {
+    /// Which regime holds: the structure's, or that of each section of a compound weir.
+    pub regimes: Vec<usize>,
+    /// The corrected inputs.
+    pub corrected: Vec<f64>,
 }
 
 /// What a source of a problem is in the file.
@@ -88,11 +97,39 @@ pub enum Refusal {
     #[error("the equation cannot be built: {}", .0.first().map(ToString::to_string).unwrap_or_default())]
     Equation(Vec<Fault>),
     /// No water passes the crest.
-    #[error("no water passes the crest at an indicated head of {0} m, known biases taken out")]
+    #[error(
+        "no water passes the crest at an indicated head of {0} m, or too little for the equation; known \
+         biases are taken out"
+    )]
     Dry(f64),
     /// The equation has no solution here.
     #[error("the equation has no value here: {0}")]
     NoSolution(String),
+    /// The discharge jumps over the flow that is asked about.
+    #[error(
+        "no head gives a flow of {flow} m3/s: at {head} m it jumps from {below} m3/s to {above} m3/s, as \
+         the published equation changes there"
+    )]
+    FlowJumps {
+        /// The flow, m3/s.
+        flow: f64,
+        /// Where it jumps, m.
+        head: f64,
+        /// The flow just below, m3/s.
+        below: f64,
+        /// The flow just above, m3/s.
+        above: f64,
+    },
+    /// The tailwater stands as high as the water upstream.
+    #[error(
+        "the tailwater head ({tailwater} m) is not below the head ({head} m): the flow may run backwards"
+    )]
+    TailwaterAbove {
+        /// Corrected head of the tailwater, m.
+        tailwater: f64,
+        /// Corrected head, m.
+        head: f64,
+    },
     /// No head gives the flow.
     #[error("no head up to {highest} m gives a flow of {flow} m3/s")]
     NoHeadForFlow {
@@ -139,13 +176,13 @@ impl Station {
     /// # Errors
     ///
     /// As [`Station::at`].
-    pub fn sketch(&self, moment: Moment) -> Result<Option<(Vec<usize>, Vec<f64>)>, Refusal> {
+    pub fn sketch(&self, moment: Moment) -> Result<Option<Sketch>, Refusal> {
         self.check_moment(moment)?;
         let Kind::Catalogue(installation) = &self.kind else { return Ok(None) };
         let inputs = self.indicated_inputs(moment);
         let known = self.known(moment, &inputs);
         let regimes = installation.regimes(&self.values(moment));
-        Ok(Some((regimes, corrected(&inputs, &known.sources))))
+        Ok(Some(Sketch { regimes, corrected: corrected(&inputs, &known.sources) }))
     }
 
     /// The form of the structure's equation at a moment; `None` for an equation of the user's own.
@@ -153,7 +190,7 @@ impl Station {
         let Kind::Catalogue(installation) = &self.kind else { return None };
         let mut installation = installation.as_ref().clone();
         if moment.tailwater.is_some() {
-            set_rating(&mut installation, None);
+            set_curve(&mut installation, None);
         }
         Some(installation.form(&self.values(moment)))
     }
@@ -223,22 +260,23 @@ impl Station {
             Ok((model, Some(form)))
         };
         let place = self.inputs.iter().position(|input| input.key == TAILWATER_HEAD.key);
-        let rated = installation.second_head.as_ref().and_then(|second| second.rating.as_ref());
-        let (Some((rating, _)), Some(place)) = (rated, place) else { return build(installation) };
-        let mut installation = installation.as_ref().clone();
+        let curve = installation.second_head.as_ref().and_then(|second| second.curve.as_ref());
+        let (Some(curve), Some(place)) = (curve, place) else { return build(installation) };
+        let mut installed = installation.as_ref().clone();
         inputs[place] = if let Some(level) = moment.tailwater {
-            // A level that is asked about stands, whatever the rating says.
-            set_rating(&mut installation, None);
+            // A level that is asked about stands, whatever the curve says.
+            set_curve(&mut installed, None);
             level
         } else {
-            let (mut model, _) = build(&installation)?;
+            let (mut model, _) = build(&installed)?;
             let level = model.expression("h_2").map_err(Refusal::Equation)?.0;
             let level = model.evaluate(&[level], inputs).0[0];
+            // Where there is no flow to follow, the equation itself says so below.
             let level = if level.is_nan() { 0.0 } else { level };
-            set_rating(&mut installation, Some((rating.clone(), level)));
+            set_curve(&mut installed, Some(TailwaterCurve { level, ..curve.clone() }));
             level
         };
-        build(&installation)
+        build(&installed)
     }
 
     /// The sources that the structure brings with it, at the corrected inputs.
@@ -376,13 +414,10 @@ impl Station {
     }
 }
 
-/// Puts another rating in the place of an installation's.
-fn set_rating(
-    installation: &mut Installation,
-    rating: Option<(crate::model::expression::Table, f64)>,
-) {
+/// Puts another tailwater curve in the place of an installation's.
+fn set_curve(installation: &mut Installation, curve: Option<TailwaterCurve>) {
     if let Some(second) = installation.second_head.take() {
-        installation.second_head = Some(SecondHead { rating, ..second });
+        installation.second_head = Some(SecondHead { curve, ..second });
     }
 }
 

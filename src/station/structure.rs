@@ -10,9 +10,9 @@ use super::section::{Findings, Section, article};
 use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::structures::{
     CATALOGUE, COMPOUND, Choice, GRAVITY, InputSpec, Installation, InstalledInput,
-    KINETIC_ENERGY_COEFFICIENT, find,
+    KINETIC_ENERGY_COEFFICIENT, find, section_key,
 };
-use crate::units::{Dimension, Unit};
+use crate::units::{Dimension, Unit, significant};
 
 /// The kind of a station's structure.
 #[derive(Clone, Debug)]
@@ -83,7 +83,7 @@ pub(super) fn read(
     };
     let mut installation = Installation::plain(structure);
     if let Some(choice) = &structure.choice {
-        installation.option = read_choice(&mut section, choice, findings).unwrap_or(0);
+        installation.set = read_choice(&mut section, choice, findings).unwrap_or(0);
     }
     let mut of_sections = Vec::new();
     if structure.kind == COMPOUND {
@@ -103,7 +103,7 @@ pub(super) fn read(
         unused.push((GRAVITY.key.to_owned(), "gravity is inside this coefficient"));
     }
     section.finish(findings);
-    check_widths(&inputs, findings);
+    check_widths(&installation, &inputs, findings);
     Some(StructureSection { kind: Kind::Catalogue(Box::new(installation)), inputs, unused })
 }
 
@@ -134,7 +134,7 @@ pub(super) fn read_choice(
     choice: &Choice,
     findings: &mut Findings<'_>,
 ) -> Option<usize> {
-    let words: Vec<&str> = choice.options.iter().map(|(word, _)| *word).collect();
+    let words: Vec<&str> = choice.sets.iter().map(|(word, _)| *word).collect();
     let help = format!("one of: {}", words.join(", "));
     let value = section.need(choice.key, &help, findings)?;
     let word = super::section::string(choice.key, value, findings)?;
@@ -152,30 +152,31 @@ pub(super) fn read_choice(
     found
 }
 
-/// Keys of the width of a control.
-const CONTROLS: [&str; 3] = ["crest_width", "throat_width", "throat_diameter"];
-
 /// No crest or throat is wider than the channel that leads to it, nor are those of all sections together.
-fn check_widths(inputs: &[StationInput], findings: &mut Findings<'_>) {
+/// A channel that widens upwards is not asked: its width is that at the bed.
+fn check_widths(installation: &Installation, inputs: &[StationInput], findings: &mut Findings<'_>) {
     let find = |key: &str| inputs.iter().find(|input| input.key == key);
-    let Some(approach) = find("approach_width") else { return };
+    let approach = find("approach_width").or_else(|| find("approach_bottom_width"));
+    let widens = find("approach_side_slope").and_then(|slope| slope.value) > Some(0.0);
+    let Some(approach) = approach.filter(|_| !widens) else { return };
     let Some(approach_width) = approach.value else { return };
-    let is_of_section = |input: &&StationInput| {
-        input.key.starts_with("section ") && CONTROLS.iter().any(|key| input.key.ends_with(key))
-    };
-    let together: f64 = inputs.iter().filter(is_of_section).filter_map(|input| input.value).sum();
-    let controls = CONTROLS.into_iter().filter_map(find).map(|control| {
+    let own = installation.structure.control_width.and_then(find).map(|control| {
         let name = format!("`{}` ({})", control.key, control.text);
         (name, control.value.unwrap_or(0.0), control.span.clone())
     });
-    let sections = (format!("the widths of the sections together ({together} m)"), together, None);
-    for (name, width, place) in controls.chain([sections]) {
+    let of_sections = installation.sections.iter().zip(1..).filter_map(|(section, number)| {
+        let key = section.installation.structure.control_width?;
+        find(&section_key(number, key))?.value
+    });
+    let together: f64 = of_sections.sum();
+    let name = format!("the widths of the sections together ({} m)", significant(together, 6));
+    for (name, width, place) in own.into_iter().chain([(name, together, None)]) {
         // Room for the rounding of a sum.
         if width <= approach_width * (1.0 + 1e-12) {
             continue;
         }
         let span = approach.span.clone().unwrap_or(0..0);
-        let title = format!("`approach_width` ({}) is below {name}", approach.text);
+        let title = format!("`{}` ({}) is below {name}", approach.key, approach.text);
         let diagnostic = Diagnostic::error(Code::OutsideDomain, span, title)
             .help("the approach channel is at least as wide as the control");
         findings.push(match place {

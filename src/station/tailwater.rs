@@ -9,7 +9,9 @@ use super::section::{Findings, Section, string};
 use super::structure::{StationInput, input_without_value, read_value};
 use crate::diagnostic::{Code, Diagnostic, Span, nearest, shown};
 use crate::model::expression::Table;
-use crate::model::structures::{Installation, SecondHead, SecondHeadAt, TAILWATER_HEAD};
+use crate::model::structures::{
+    Installation, SecondHead, SecondHeadAt, TAILWATER_HEAD, TailwaterCurve,
+};
 use crate::units::{Dimension, Unit};
 
 /// Where the level of the tailwater comes from.
@@ -18,7 +20,7 @@ pub enum Tailwater {
     /// It is always the same.
     Level,
     /// It follows the discharge.
-    Rating(Table),
+    Curve(Table),
     /// It is a column of the record.
     Column {
         /// Its name.
@@ -28,10 +30,10 @@ pub enum Tailwater {
     },
 }
 
-/// More points than a rating by hand has.
+/// More points than a curve by hand has.
 const MOST_POINTS: usize = 1000;
-/// The name of the rating in the equation.
-const RATING: &str = "tailwater_rating";
+/// Its name in the equation.
+const CURVE: &str = "tailwater_curve";
 /// That the level on file is no head of a drowned-flow equation.
 const NO_EQUATION: &str = "none";
 
@@ -49,12 +51,13 @@ pub(super) fn read(
     let mut input = input_without_value(&TAILWATER_HEAD.into());
     let tailwater = match (level, table, column) {
         (Some(level), None, None) => {
-            input = read_value(TAILWATER_HEAD.key, level, Some(Dimension::LENGTH), findings)
-                .unwrap_or(input);
+            if let Some(read) = read_value("level", level, Some(Dimension::LENGTH), findings) {
+                input = StationInput { key: TAILWATER_HEAD.key.to_owned(), ..read };
+            }
             check_level(&input, findings);
             Some(Tailwater::Level)
         }
-        (None, Some(table), None) => read_rating(table, findings).map(Tailwater::Rating),
+        (None, Some(table), None) => read_curve(table, findings).map(Tailwater::Curve),
         (None, None, Some(column)) => read_column(column, unit.as_ref(), findings),
         _ => {
             let span = section.span.clone();
@@ -69,17 +72,17 @@ pub(super) fn read(
         let title = "`unit` belongs to a column of the record";
         findings.error(Code::KeysDisagree, span, title);
     }
-    let rating = match &tailwater {
-        Some(Tailwater::Rating(table)) => Some((table.clone(), 0.0)),
+    let curve = match &tailwater {
+        Some(Tailwater::Curve(table)) => Some(TailwaterCurve { table: table.clone(), level: 0.0 }),
         _ => None,
     };
     let second = if installation.sections.is_empty() {
         read_second_head(&mut section, installation, false, findings)
     } else {
         refuse_for_sections(&mut section, findings);
-        SecondHead { drowned: None, modular_limit: None, rating: None }
+        SecondHead { drowned: None, modular_limit: None, curve: None }
     };
-    installation.second_head = Some(SecondHead { rating, ..second });
+    installation.second_head = Some(SecondHead { curve, ..second });
     for each in &installation.sections {
         check_limit_is_known(&each.installation, section.span.clone(), findings);
     }
@@ -129,13 +132,16 @@ fn check_level(input: &StationInput, findings: &mut Findings<'_>) {
     if let (Some(value), Some(span)) = (input.value, input.span.clone())
         && !(low..=high).contains(&value)
     {
-        let title = format!("`level` cannot be {}: it is a head above the crest", input.text);
+        let title = format!(
+            "`level` cannot be {}: a level between {low} m and {high} m above the crest is due",
+            input.text
+        );
         findings.error(Code::OutsideDomain, span, title);
     }
 }
 
 /// Pairs of discharge and level, in increasing discharge.
-fn read_rating(value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) -> Option<Table> {
+fn read_curve(value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) -> Option<Table> {
     let help = "table = [[\"0 l/s\", \"-80 mm\"], [\"50 l/s\", \"120 mm\"]]: discharge and level above the \
                 crest, in increasing discharge";
     let mut wrong = |span, title: String| {
@@ -162,6 +168,11 @@ fn read_rating(value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) -> Opt
         let level = quantity::read("table", &pair[1], Some(Dimension::LENGTH), findings);
         points.push([flow?, level?]);
     }
+    if let Some([first, _]) = points.first().filter(|[flow, _]| flow.value < 0.0) {
+        let title = format!("`table`: a discharge cannot be {}", first.text);
+        findings.push(Diagnostic::error(Code::OutsideDomain, first.span.clone(), title).help(help));
+        return None;
+    }
     for pair in points.windows(2) {
         if pair[1][0].value <= pair[0][0].value {
             let title = format!(
@@ -180,7 +191,7 @@ fn read_rating(value: &Spanned<DeValue<'_>>, findings: &mut Findings<'_>) -> Opt
         }
     }
     let column = |place: usize| points.iter().map(|p| p[place].value).collect::<Vec<f64>>();
-    Table::line(RATING, &column(0), &column(1))
+    Table::line(CURVE, &column(0), &column(1))
 }
 
 fn read_column(
@@ -189,6 +200,10 @@ fn read_column(
     findings: &mut Findings<'_>,
 ) -> Option<Tailwater> {
     let name = string("column", value, findings)?;
+    if name.trim().is_empty() {
+        findings.error(Code::OutsideDomain, value.span(), "`column` has no name");
+        return None;
+    }
     let Some((text, span)) = unit else {
         let title = "`column` needs `unit`: that of its values";
         findings.push(
@@ -253,7 +268,7 @@ pub(super) fn read_second_head(
     };
     let modular_limit = read_limit(section, findings);
     if let Some(span) = section.key_span("modular_limit")
-        && !installation.structure.modular.highest.contains("M_L")
+        && !installation.structure.modular.is_ratio()
     {
         let title =
             "`modular_limit` has no effect: the limit of this structure is no ratio of heads";
@@ -262,7 +277,7 @@ pub(super) fn read_second_head(
                 .help(installation.structure.modular.words),
         );
     }
-    SecondHead { drowned, modular_limit, rating: None }
+    SecondHead { drowned, modular_limit, curve: None }
 }
 
 fn unknown_equation(word: &str, span: Span, words: &[&str], findings: &mut Findings<'_>) {
@@ -278,9 +293,9 @@ fn unknown_equation(word: &str, span: Span, words: &[&str], findings: &mut Findi
 fn read_limit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Option<f64> {
     let value = section.get("modular_limit")?;
     let stated = quantity::read("modular_limit", value, Some(Dimension::NONE), findings)?;
-    if !(0.0..1.0).contains(&stated.value) {
+    if !(stated.value > 0.0 && stated.value < 1.0) {
         let title = format!(
-            "`modular_limit` cannot be {}: it is the ratio of two heads, 0 to 1",
+            "`modular_limit` cannot be {}: it is a ratio of two heads, above 0 and below 1",
             stated.text
         );
         findings.error(Code::OutsideDomain, value.span(), title);
@@ -292,17 +307,12 @@ fn read_limit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Opt
 /// A limit that nobody published has to be stated.
 fn check_limit_is_known(installation: &Installation, span: Span, findings: &mut Findings<'_>) {
     let structure = installation.structure;
-    let stated = installation.second_head.as_ref().and_then(|second| second.modular_limit);
-    let in_choice = structure.choice.is_some_and(|c| c.symbols.iter().any(|(s, _)| *s == "M_L"));
-    let is_ratio = structure.modular.highest.contains("M_L");
-    if stated.is_none() && is_ratio && structure.modular.ratio.is_none() && !in_choice {
+    if structure.modular.is_ratio() && installation.modular_limit().is_none() {
         let title =
             format!("no modular limit of `{}` is known: state `modular_limit`", structure.kind);
-        findings.push(
-            Diagnostic::error(Code::MissingKey, span, title).help(
-                "from your copy of the standard, for example modular_limit = 0.75, in [tailwater] or in \
-                 the section of a compound weir",
-            ),
-        );
+        findings.push(Diagnostic::error(Code::MissingKey, span, title).help(
+            "from your copy of the standard, for example modular_limit = 0.75, in [tailwater] or in the \
+             section of a compound weir",
+        ));
     }
 }

@@ -55,7 +55,7 @@ pub fn equation_template() -> String {
 }
 
 fn choice_lines(choice: &Choice) -> String {
-    let words: Vec<&str> = choice.options.iter().map(|(word, _)| *word).collect();
+    let words: Vec<&str> = choice.sets.iter().map(|(word, _)| *word).collect();
     let mut lines = String::new();
     for chunk in words.chunks(12) {
         let _ = writeln!(lines, "# {}: {}", choice.key, chunk.join(", "));
@@ -98,12 +98,11 @@ fn coefficient(structure: &Structure) -> String {
              # replaces = \"published coefficient\"\n",
             rule.words
         ),
-        Coefficient::FromUser(_) if structure.kind == COMPOUND => "\n# The published uncertainty of each section's coefficient enters by itself; like sections share\n\
+        Coefficient::FromUser { .. } if structure.kind == COMPOUND => "\n# The published uncertainty of each section's coefficient enters by itself; like sections share\n\
              # theirs.\n"
             .to_owned(),
-        Coefficient::FromUser(why) => {
-            let own = structure.inputs.iter().any(|input| input.key == "discharge_coefficient");
-            let acts_on = if own { "discharge_coefficient" } else { COEFFICIENT_FACTOR.key };
+        Coefficient::FromUser { inputs, why } => {
+            let acts_on = inputs.first().copied().unwrap_or_default();
             format!(
                 "\n# {why}.\n[[error_source]]\nname = \"coefficient\"\nacts_on = \"{acts_on}\"\n\
                  expanded_uncertainty = \"4 %\"\ncoverage_factor = 2\nfixed_until = \"rebuilding\"\n"
@@ -127,7 +126,7 @@ fn tailwater(structure: &Structure) -> String {
         let others: Vec<&str> = others.iter().copied().chain(["none"]).collect();
         let _ = writeln!(out, "# drowned_flow = \"{first}\"    # or: {}", others.join(", "));
     }
-    if structure.modular.highest.contains("M_L") {
+    if structure.modular.is_ratio() {
         let ratio = structure.modular.ratio.unwrap_or(0.7);
         let _ = writeln!(out, "# modular_limit = {ratio}    # in place of the published one");
     }

@@ -1,6 +1,7 @@
 //! At which head a question is asked.
 
 use crate::station::{Moment, Refusal, Station};
+use crate::units::significant;
 
 /// At which head a question is asked.
 #[derive(Clone, Copy, Debug, PartialEq)]
@@ -70,5 +71,22 @@ fn head_for_flow(station: &Station, flow: f64, moment: Moment) -> Result<f64, Re
             high = middle;
         }
     }
+    let (below, above) = (flow_at(low)?, flow_at(high)?);
+    if above - below > JUMP * flow {
+        return Err(Refusal::FlowJumps {
+            flow,
+            head: rounded(high),
+            below: rounded(below),
+            above: rounded(above),
+        });
+    }
     Ok(high)
+}
+
+/// Two neighbouring heads whose flows differ by more than this share are on both sides of a jump.
+const JUMP: f64 = 1e-6;
+
+/// Six digits, for words.
+fn rounded(value: f64) -> f64 {
+    significant(value, 6).parse().unwrap_or(value)
 }

@@ -1,14 +1,18 @@
 //! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::structures::{Form, LimitKind, TAILWATER_HEAD};
+use crate::model::Outcome;
+use crate::model::expression::Table;
+use crate::model::structures::{Form, TAILWATER_HEAD};
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
 use crate::propagation::{Agreement, Coverage, Linear, Share, linear, shares};
-use crate::station::{Evidence, Kind, Moment, Refusal, Setting, Station, Tailwater};
+use crate::station::{
+    Evidence, Kind, Moment, Refusal, Setting, Station, Tailwater, unstated_warning,
+};
 use crate::units::{Unit, significant};
 
 use super::at::{At, find_moment};
-use super::hydraulics::{Hydraulics, hydraulics};
+use super::hydraulics::{FlowState, Hydraulics, hydraulics};
 use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
 use super::range::{failing_heads, note_failing_heads};
 use super::warnings::{
@@ -55,8 +59,10 @@ pub struct Budget {
     pub tailwater: Option<f64>,
     /// The month asked about.
     pub month: Option<u32>,
-    /// The equations, name and right-hand side.
-    pub equations: Vec<(String, String)>,
+    /// The equations with their values.
+    pub equations: Vec<EquationRow>,
+    /// Published numbers in them: what, by whom, how well known.
+    pub numbers: Vec<[String; 3]>,
     /// The inputs.
     pub inputs: Vec<InputRow>,
     /// The result.
@@ -113,6 +119,19 @@ pub struct MonteCarloPart {
     pub agreement: Agreement,
     /// Base trials of the shares.
     pub base_trials: u64,
+}
+
+/// An equation, for retracing.
+#[derive(Clone, Debug, PartialEq)]
+pub struct EquationRow {
+    /// Left-hand side.
+    pub name: String,
+    /// Right-hand side.
+    pub text: String,
+    /// Its value at the corrected inputs, in SI units; `None` where it has none.
+    pub value: Option<f64>,
+    /// The SI unit.
+    pub unit: String,
 }
 
 /// An input, for retracing.
@@ -209,6 +228,7 @@ pub fn budget(
     let head = moment.head;
     let mut setting = station.at(moment)?;
     let corrected = setting.problem.corrected();
+    refuse_backwards_flow(&mut setting, &corrected)?;
     let linear = linear(&mut setting.problem).swap_remove(0);
     let finite = linear.value.is_finite() && linear.standard_uncertainty.is_finite();
     station.check_outcome(linear.outcome, head, finite)?;
@@ -221,7 +241,10 @@ pub fn budget(
     };
     note_failing_heads(&mut limits, &failing_heads(station, moment).unwrap_or_default());
     limits.extend(station_limits(station, moment));
-    warnings.extend(limit_warnings(&limits, setting.form.as_ref()));
+    warnings.extend(limit_warnings(&limits));
+    warnings.extend(range_warning(station, head));
+    let hydraulics = hydraulics(&mut setting, &limits, &corrected);
+    warnings.extend(drowned_warnings(&setting, hydraulics.as_ref()));
     warnings.extend(table_warnings(&mut setting, &corrected));
     warnings.extend(branch_warnings(&setting));
     warnings.extend(freedom_warning(&linear));
@@ -255,7 +278,8 @@ pub fn budget(
             .input(TAILWATER_HEAD.key)
             .map(|input| setting.problem.indicated[input]),
         month: question.month,
-        equations: equations(&setting),
+        equations: equations(station, &mut setting, &corrected),
+        numbers: numbers(&setting),
         inputs: input_rows(station, &setting, &corrected, tailwater.is_some()),
         result: result_part(station, &setting, &linear, expanded_uncertainty),
         coverage: question.coverage,
@@ -264,7 +288,7 @@ pub fn budget(
         monte_carlo,
         rows,
         corrections: corrections(&setting, &linear),
-        hydraulics: hydraulics(&mut setting, &limits, &corrected),
+        hydraulics,
         limits,
         warnings,
         linear,
@@ -290,18 +314,100 @@ fn kind_words(station: &Station, form: Option<&Form>) -> (String, String, String
     }
 }
 
-fn equations(setting: &Setting) -> Vec<(String, String)> {
-    let model = &setting.problem.model;
-    let unknowns = model.unknowns().iter().map(|unknown| {
-        (unknown.name.clone(), format!("root of 0 = {}", model.text(unknown.residual)))
+/// A tailwater as high as the water upstream: no equation of a weir or flume holds.
+fn refuse_backwards_flow(setting: &mut Setting, corrected: &[f64]) -> Result<(), Refusal> {
+    let model = &mut setting.problem.model;
+    let head = model.input("head").map(|input| corrected[input]);
+    let known = model.input(TAILWATER_HEAD.key).is_some();
+    let (Some(head), true) = (head, known) else { return Ok(()) };
+    let Ok((second, _)) = model.expression("h_2") else { return Ok(()) };
+    let (values, outcome) = model.evaluate(&[second], corrected);
+    let tailwater = values[0];
+    if outcome != Outcome::Dry && head > 0.0 && tailwater >= head {
+        return Err(Refusal::TailwaterAbove { tailwater, head });
+    }
+    Ok(())
+}
+
+/// The head is one that the station is not asked about.
+fn range_warning(station: &Station, head: Option<f64>) -> Option<Warning> {
+    let [low, high] = station.head.as_ref()?.range.as_ref()?;
+    let head = head.filter(|head| !(low.value..=high.value).contains(head))?;
+    let text = format!(
+        "the head of {} m is outside the station's range, {} to {}",
+        significant(head, 4),
+        low.text,
+        high.text
+    );
+    Some(Warning::new(Code::OutsideRange, text))
+}
+
+/// Factors of drowned flow that no source acts on, where the flow is drowned.
+fn drowned_warnings(setting: &Setting, hydraulics: Option<&Hydraulics>) -> Vec<Warning> {
+    let Some(form) = &setting.form else { return Vec::new() };
+    let drowned = hydraulics.is_some_and(|found| found.state == FlowState::Drowned);
+    let acted_on =
+        |key: &String| setting.rows.iter().any(|row| row.acts_on.iter().any(|acts| acts == key));
+    form.unstated
+        .iter()
+        .filter(|each| drowned && each.when_drowned && !each.inputs.iter().any(acted_on))
+        .map(unstated_warning)
+        .collect()
+}
+
+/// The equations with their values at the corrected inputs, the result first, then what it is made of.
+fn equations(station: &Station, setting: &mut Setting, corrected: &[f64]) -> Vec<EquationRow> {
+    let model = &mut setting.problem.model;
+    let unknowns = model.unknowns().to_vec().into_iter().map(|unknown| {
+        (
+            unknown.name.clone(),
+            format!("root of 0 = {}", model.text(unknown.residual)),
+            unknown.dimension,
+        )
     });
     let definitions = model.definitions().iter().rev();
-    let definitions =
-        definitions.map(|each| (each.name.clone(), model.text_of_definition(each.id)));
-    // The result first, then what it is made of.
-    let mut equations: Vec<_> = definitions.chain(unknowns).collect();
-    equations.sort_by_key(|(name, _)| name != model.result_name());
-    equations
+    let definitions = definitions
+        .map(|each| (each.name.clone(), model.text_of_definition(each.id), each.dimension));
+    let mut lines: Vec<_> = definitions.chain(unknowns).collect();
+    lines.sort_by_key(|(name, ..)| name != model.result_name());
+    let ids: Vec<_> = lines
+        .iter()
+        .map(|(name, ..)| model.expression(name).map_or_else(|_| model.result(), |(id, _)| id))
+        .collect();
+    let (values, _) = model.evaluate(&ids, corrected);
+    let rows = lines.into_iter().zip(values).map(|((name, text, dimension), value)| EquationRow {
+        name,
+        text,
+        value: Some(value).filter(|value| value.is_finite()),
+        unit: dimension.to_string(),
+    });
+    let curve = match &station.tailwater {
+        Some(Tailwater::Curve(table)) => Some(EquationRow {
+            name: table.name().to_owned(),
+            text: curve_text(table),
+            value: None,
+            unit: "m".to_owned(),
+        }),
+        _ => None,
+    };
+    rows.chain(curve).collect()
+}
+
+fn curve_text(table: &Table) -> String {
+    let points = table
+        .points()
+        .map(|(flow, level)| format!("{} m3/s: {} m", significant(flow, 6), significant(level, 6)));
+    format!("linear between {}", points.collect::<Vec<_>>().join("; "))
+}
+
+/// The published numbers in the equation.
+fn numbers(setting: &Setting) -> Vec<[String; 3]> {
+    let numbers = setting.form.iter().flat_map(|form| &form.numbers);
+    numbers
+        .map(|each| {
+            [each.what.clone(), each.source.document.to_owned(), each.confidence.words().to_owned()]
+        })
+        .collect()
 }
 
 fn input_rows(
@@ -322,7 +428,7 @@ fn input_rows(
                 _ if input.key != TAILWATER_HEAD.key => &input.text,
                 // A level that was asked about takes the place of what the file says.
                 _ if tailwater_is_asked => "",
-                Some(Tailwater::Rating(_)) => "by its table",
+                Some(Tailwater::Curve(_)) => "by its table",
                 _ => &input.text,
             };
             InputRow {
@@ -438,14 +544,7 @@ fn rows(
     corrected: &[f64],
 ) -> Vec<BudgetRow> {
     let problem = &setting.problem;
-    let drowned = setting.form.as_ref().is_some_and(Form::uses_drowned_flow);
-    let bears = |kind: LimitKind| match kind {
-        LimitKind::Use | LimitKind::Critical => true,
-        // An equation for drowned flow takes over where there is one.
-        LimitKind::Modular => !drowned,
-        LimitKind::Station => false,
-    };
-    let outside = limits.iter().any(|state| !state.kept && bears(state.limit.kind));
+    let outside = limits.iter().any(|state| !state.kept && state.asked.bears_on_coefficient());
     let groups = problem.groups();
     linear
         .ranking()

@@ -1,13 +1,12 @@
 //! The check of a station file beyond its reading: does it answer over its whole range of heads.
 
 use crate::diagnostic::Warning;
-use crate::model::structures::InstalledLimit;
 use crate::propagation::linear;
 use crate::station::{Kind, Moment, Refusal, Station};
 use crate::units::Unit;
 
 use super::limits::{LimitState, limit_states, station_limits};
-use super::range::failing_heads;
+use super::range::{FailingLimit, failing_heads};
 
 /// What a station is, and how it fares over its range.
 #[derive(Clone, Debug)]
@@ -24,21 +23,15 @@ pub struct Check {
     pub stated_unit: Option<Unit>,
     /// For each end of the range of heads: the head, the discharge, and the limits that are not kept.
     pub ends: Vec<CheckedEnd>,
-    /// Limits that are not kept somewhere in the range, with the heads; `None` where no range is stated.
+    /// Limits that are not kept somewhere in the range, with the heads; `None` where no range is stated, or
+    /// the equation is the user's own.
     pub failing: Option<Vec<FailingLimit>>,
+    /// The flow is taken to be modular: nothing is known of the tailwater.
+    pub modular_not_tested: bool,
     /// What the station states of itself that does not fit: the gauge too near, say.
     pub misfits: Vec<LimitState>,
     /// What is doubtful about the file.
     pub warnings: Vec<Warning>,
-}
-
-/// A limit that is not kept at some heads of the range.
-#[derive(Clone, Debug)]
-pub struct FailingLimit {
-    /// The limit.
-    pub limit: InstalledLimit,
-    /// The indicated heads, from and to, m.
-    pub heads: Vec<[f64; 2]>,
 }
 
 /// One end of the range of heads.
@@ -95,19 +88,14 @@ pub fn check(station: &Station) -> Check {
         automatic_sources,
         stated_unit,
         ends,
-        failing: failing_heads(station, Moment::default()).map(failing_limits),
+        failing: failing_heads(station, Moment::default())
+            .map(|found| found.into_iter().filter(|each| !each.heads.is_empty()).collect()),
+        modular_not_tested: station.tailwater.is_none()
+            && matches!(station.kind, Kind::Catalogue(_)),
         misfits: station_limits(station, Moment::default())
             .into_iter()
             .filter(|state| !state.kept)
             .collect(),
         warnings: station.warnings.clone(),
     }
-}
-
-fn failing_limits(found: Vec<(InstalledLimit, Vec<[f64; 2]>)>) -> Vec<FailingLimit> {
-    found
-        .into_iter()
-        .filter(|(_, heads)| !heads.is_empty())
-        .map(|(limit, heads)| FailingLimit { limit, heads })
-        .collect()
 }

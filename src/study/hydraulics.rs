@@ -1,7 +1,7 @@
 //! Whether the flow at the control is modular, and up to what tailwater it would be.
 
-use super::limits::LimitState;
-use crate::model::structures::{LimitKind, TAILWATER_HEAD};
+use super::limits::{Asked, LimitState};
+use crate::model::structures::TAILWATER_HEAD;
 use crate::station::Setting;
 
 /// What is known of the flow at the control.
@@ -14,7 +14,7 @@ pub struct Hydraulics {
     /// The highest tailwater at which the flow is modular, m above the crest; `None` where sections differ
     /// or no limit is known.
     pub highest_modular: Option<f64>,
-    /// The drowned-flow factor; `None` where no equation for it is in force.
+    /// The drowned-flow factor; `None` where no equation for it is in force, and for several sections.
     pub factor: Option<f64>,
     /// The published limit in words, with its source.
     pub limit: String,
@@ -43,6 +43,7 @@ pub(super) fn hydraulics(
     let modular = form.structure.modular;
     let limit =
         format!("{} ({}, {})", modular.words, modular.source.document, modular.confidence.words());
+    let has_equation = !form.structure.drowned.is_empty();
     let model = &mut setting.problem.model;
     let tailwater_known = model.input(TAILWATER_HEAD.key).is_some();
     let mut value = |text: &str| {
@@ -51,14 +52,19 @@ pub(super) fn hydraulics(
     };
     let highest_modular = form.highest_tailwater.as_deref().and_then(&mut value);
     let tailwater_head = tailwater_known.then(|| value("h_2")).flatten();
-    let drowned = form.uses_drowned_flow();
-    let factor = drowned.then(|| value("f")).flatten();
-    let broken = limits.iter().any(|state| state.limit.kind == LimitKind::Modular && !state.kept);
-    let state = match (tailwater_known, broken, drowned) {
-        (false, ..) => FlowState::NotChecked,
-        (true, false, _) => FlowState::Modular,
-        (true, true, true) => FlowState::Drowned,
-        (true, true, false) => FlowState::NotModular,
+    let broken = |drowned: bool| {
+        let asked = Asked::Modular { drowned };
+        limits.iter().any(|state| state.asked == asked && !state.kept)
+    };
+    let factor = value("f").filter(|_| tailwater_known && has_equation);
+    let state = if !tailwater_known {
+        FlowState::NotChecked
+    } else if broken(false) {
+        FlowState::NotModular
+    } else if broken(true) {
+        FlowState::Drowned
+    } else {
+        FlowState::Modular
     };
     Some(Hydraulics { state, tailwater_head, highest_modular, factor, limit })
 }

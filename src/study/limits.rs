@@ -7,9 +7,48 @@ use crate::model::{Confidence, Model, Side};
 use crate::station::{Moment, Station};
 use crate::units::significant;
 
+use super::range::without_column;
+
+/// What a limit asks.
+#[derive(Clone, Copy, Debug, PartialEq, Eq)]
+pub enum Asked {
+    /// A standard's limit of use.
+    Use,
+    /// The flow is modular.
+    Modular {
+        /// An equation for drowned flow takes over where it is not.
+        drowned: bool,
+    },
+    /// The flow at the control is critical.
+    Critical,
+    /// The head is not above the largest that the structure can take.
+    Maximum,
+    /// The gauge stands at the right distance.
+    Gauge,
+}
+
+impl From<LimitKind> for Asked {
+    fn from(kind: LimitKind) -> Self {
+        match kind {
+            LimitKind::Use => Self::Use,
+            LimitKind::Modular { drowned } => Self::Modular { drowned },
+            LimitKind::Critical => Self::Critical,
+        }
+    }
+}
+
+impl Asked {
+    /// Where it is not kept, the published uncertainty of the coefficient does not hold.
+    pub(super) fn bears_on_coefficient(self) -> bool {
+        matches!(self, Self::Use | Self::Critical | Self::Modular { drowned: false })
+    }
+}
+
 /// A limit against what is there.
 #[derive(Clone, Debug, PartialEq)]
 pub struct LimitState {
+    /// What it asks.
+    pub asked: Asked,
     /// The limit.
     pub limit: InstalledLimit,
     /// What is there, in SI units.
@@ -30,8 +69,9 @@ pub struct LimitState {
 /// For each limit of a form its quantity, its bound, and what is positive where it applies.
 pub(super) fn limit_expressions(model: &mut Model, form: &Form) -> Vec<Id> {
     let mut read = |text: &str| {
-        // A limit of the catalogue always reads; a test holds it so.
-        model.expression(text).map_or_else(|_| model.result(), |(id, _)| id)
+        let read = model.expression(text);
+        debug_assert!(read.is_ok(), "a test of the catalogue reads {text}");
+        read.map_or_else(|_| model.result(), |(id, _)| id)
     };
     form.limits
         .iter()
@@ -63,6 +103,7 @@ pub(super) fn limit_states(model: &mut Model, form: &Form, inputs: &[f64]) -> Ve
             let [value, bound] = values?;
             let (_, dimension) = model.expression(&limit.quantity).ok()?;
             Some(LimitState {
+                asked: limit.kind.into(),
                 limit: limit.clone(),
                 value,
                 bound,
@@ -79,16 +120,17 @@ pub(super) fn limit_states(model: &mut Model, form: &Form, inputs: &[f64]) -> Ve
 pub(super) fn station_limits(station: &Station, moment: Moment) -> Vec<LimitState> {
     let Some(stated) = &station.head else { return Vec::new() };
     let own = |quantity: &str, side, meaning: &str| InstalledLimit {
-        kind: LimitKind::Station,
+        kind: LimitKind::Use,
         quantity: quantity.to_owned(),
         side,
         bound: String::new(),
         applies: None,
         meaning: meaning.to_owned(),
         source: crate::model::source::STATION_FILE,
-        confidence: Confidence::Seen,
+        confidence: Confidence::Stated,
     };
-    let state = |limit: InstalledLimit, value: f64, bound: f64| LimitState {
+    let state = |asked, limit: InstalledLimit, value: f64, bound: f64| LimitState {
+        asked,
         margin: limit.side.margin(value, bound),
         kept: limit.side.allows(value, bound),
         limit,
@@ -100,10 +142,11 @@ pub(super) fn station_limits(station: &Station, moment: Moment) -> Vec<LimitStat
     let mut states = Vec::new();
     if let (Some(maximum), Some(head)) = (&stated.maximum, moment.head) {
         let limit = own("head", Side::AtMost, "largest head that the structure can take");
-        states.push(state(limit, head, maximum.value));
+        states.push(state(Asked::Maximum, limit, head, maximum.value));
     }
     let largest = stated.largest().map(|largest| largest.value);
     if let (Some(distance), Some(largest)) = (&stated.gauge_distance, largest)
+        && let (moment, _) = without_column(station, moment)
         && let Ok(mut setting) = station.at(Moment { head: Some(largest), ..moment })
         && let Some(form) = &setting.form
     {
@@ -119,18 +162,18 @@ pub(super) fn station_limits(station: &Station, moment: Moment) -> Vec<LimitStat
             let (source, confidence) = (position.source, position.confidence);
             let limit =
                 InstalledLimit { source, confidence, ..own("gauge_distance", side, meaning) };
-            states.push(state(limit, distance.value, bound));
+            states.push(state(Asked::Gauge, limit, distance.value, bound));
         }
     }
     states
 }
 
 /// A warning for each limit that is not kept.
-pub(super) fn limit_warnings(states: &[LimitState], form: Option<&Form>) -> Vec<Warning> {
-    states.iter().filter(|state| !state.kept).map(|state| warning(state, form)).collect()
+pub(super) fn limit_warnings(states: &[LimitState]) -> Vec<Warning> {
+    states.iter().filter(|state| !state.kept).map(warning).collect()
 }
 
-fn warning(state: &LimitState, form: Option<&Form>) -> Warning {
+fn warning(state: &LimitState) -> Warning {
     let limit = &state.limit;
     let unit = if state.unit == "1" { String::new() } else { format!(" {}", state.unit) };
     let side = match limit.side {
@@ -145,25 +188,36 @@ fn warning(state: &LimitState, form: Option<&Form>) -> Warning {
         significant(state.bound, 4),
     );
     let by = format!("in {} ({})", limit.source.document, limit.confidence.words());
-    let drowned = form.is_some_and(Form::uses_drowned_flow);
-    let (code, text) = match limit.kind {
-        LimitKind::Use => (Code::OutsideLimits, format!("{numbers} {by}")),
-        LimitKind::Modular if drowned => {
+    let (code, text) = match state.asked {
+        Asked::Use => {
+            (Code::OutsideLimits, format!("{numbers} {by}: a larger uncertainty is due here"))
+        }
+        Asked::Modular { drowned: true } => {
             (Code::DrownedFlow, format!("{numbers} {by}: the equation for drowned flow is used"))
         }
-        LimitKind::Modular => (
+        Asked::Modular { drowned: false } => (
             Code::NotModular,
             format!(
                 "{numbers} {by}: no equation for drowned flow is in force, and less water passes than is \
-                 stated here"
+                 stated here; lower the tailwater, or measure otherwise"
             ),
         ),
-        LimitKind::Critical => (
+        Asked::Critical => (
             Code::NotCritical,
-            format!("{numbers} by specific energy: the tailwater rules the flow, not the control"),
+            format!(
+                "{numbers} by specific energy: the tailwater rules the flow, not the control; a higher sill \
+                 or a narrower throat is due"
+            ),
         ),
-        LimitKind::Station if limit.quantity == "head" => (Code::AboveMaximum, numbers),
-        LimitKind::Station => (Code::GaugeMisplaced, format!("{numbers} {by}")),
+        Asked::Maximum => {
+            (Code::AboveMaximum, format!("{numbers}: water goes another way that is not measured"))
+        }
+        Asked::Gauge => (
+            Code::GaugeMisplaced,
+            format!(
+                "{numbers} {by}: move the gauge, or state what the misplacement costs as a source"
+            ),
+        ),
     };
     Warning::new(code, text)
 }

@@ -11,11 +11,13 @@ mod warnings;
 
 pub use at::At;
 pub use budget::{
-    Budget, BudgetRow, Correction, InputRow, MonteCarloPart, Question, ResultPart, budget,
+    Budget, BudgetRow, Correction, EquationRow, InputRow, MonteCarloPart, Question, ResultPart,
+    budget,
 };
-pub use check::{Check, CheckedEnd, FailingLimit, check};
+pub use check::{Check, CheckedEnd, check};
 pub use hydraulics::{FlowState, Hydraulics};
-pub use limits::LimitState;
+pub use limits::{Asked, LimitState};
+pub use range::FailingLimit;
 pub use sheet::{
     DerivativeLine, DrownedSheet, EquationLine, NumberLine, RegimeSheet, Sheet, TableSheet, sheet,
 };

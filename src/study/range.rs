@@ -1,8 +1,8 @@
 //! Limits over the whole range of heads: the heads at which each is not kept.
 
-use crate::model::structures::{Form, InstalledLimit};
+use crate::model::structures::{Form, InstalledLimit, LimitKind};
 use crate::model::{Model, Outcome, Program, Workspace};
-use crate::station::{Moment, Station};
+use crate::station::{Moment, Sketch, Station, Tailwater};
 
 use super::limits::{LimitState, limit_expressions, limit_values};
 
@@ -11,8 +11,14 @@ const HEADS: usize = 65;
 /// Halvings of a step of the range: the head at which a limit fails is known to 1e-6 of a step.
 const HALVINGS: usize = 20;
 
-/// A limit, and the indicated heads at which it is not kept, from and to, m.
-pub(super) type Failing = (InstalledLimit, Vec<[f64; 2]>);
+/// A limit, and where in the range it is not kept.
+#[derive(Clone, Debug)]
+pub struct FailingLimit {
+    /// The limit.
+    pub limit: InstalledLimit,
+    /// The indicated heads at which it is not kept, from and to, m; none if it is kept at all.
+    pub heads: Vec<[f64; 2]>,
+}
 
 /// A form of the equation, compiled for its limits.
 struct Compiled {
@@ -31,37 +37,52 @@ struct Sweep<'s> {
 
 /// The limits of every form that the equation takes over the station's range, with the heads at which
 /// each is not kept. `None` where no range is stated, or the equation is the user's own.
-pub(super) fn failing_heads(station: &Station, moment: Moment) -> Option<Vec<Failing>> {
+///
+/// Where the tailwater is a column of the record and no level is asked about, what needs it is left out.
+pub(super) fn failing_heads(station: &Station, moment: Moment) -> Option<Vec<FailingLimit>> {
     let [low, high] = station.head.as_ref()?.range.as_ref()?;
+    let (moment, tailwater_known) = without_column(station, moment);
     let step = (high.value - low.value) / (HEADS - 1) as f64;
     let heads: Vec<f64> = (0..HEADS).map(|index| low.value + step * index as f64).collect();
     let mut sweep = Sweep { station, moment, compiled: Vec::new() };
     let states: Vec<(usize, Vec<bool>)> =
         heads.iter().map(|head| sweep.kept_at(*head)).collect::<Option<_>>()?;
-    let mut found: Vec<Failing> = Vec::new();
+    let mut found: Vec<FailingLimit> = Vec::new();
     for form in 0..sweep.compiled.len() {
         for place in 0..sweep.compiled[form].form.limits.len() {
+            let limit = sweep.compiled[form].form.limits[place].clone();
+            if limit.kind != LimitKind::Use && !tailwater_known {
+                continue;
+            }
             let fails = |state: &(usize, Vec<bool>)| state.0 == form && !state.1[place];
             let failing: Vec<bool> = states.iter().map(fails).collect();
             let intervals = sweep.intervals(&heads, &failing, form, place);
-            let limit = sweep.compiled[form].form.limits[place].clone();
-            match found.iter_mut().find(|(known, _)| *known == limit) {
-                Some((_, known)) => known.extend(intervals),
-                None => found.push((limit, intervals)),
+            match found.iter_mut().find(|known| known.limit == limit) {
+                Some(known) => known.heads.extend(intervals),
+                None => found.push(FailingLimit { limit, heads: intervals }),
             }
         }
     }
-    for (_, intervals) in &mut found {
-        join(intervals, step);
+    for each in &mut found {
+        join(&mut each.heads, step);
     }
     Some(found)
 }
 
+/// A moment at which the station can be looked at, and whether its tailwater is known there: one that is a
+/// column of the record is taken to stand at the crest, where it drowns nothing.
+pub(super) fn without_column(station: &Station, moment: Moment) -> (Moment, bool) {
+    let unknown =
+        matches!(station.tailwater, Some(Tailwater::Column { .. })) && moment.tailwater.is_none();
+    let tailwater = moment.tailwater.or(unknown.then_some(0.0));
+    (Moment { tailwater, ..moment }, !unknown)
+}
+
 /// Notes with each limit at one head where in the range it is not kept.
-pub(super) fn note_failing_heads(states: &mut [LimitState], failing: &[Failing]) {
+pub(super) fn note_failing_heads(states: &mut [LimitState], failing: &[FailingLimit]) {
     for state in states {
-        let found = failing.iter().find(|(limit, _)| *limit == state.limit);
-        state.fails_at = found.map(|(_, intervals)| intervals.clone());
+        let found = failing.iter().find(|each| each.limit == state.limit);
+        state.fails_at = found.map(|each| each.heads.clone());
     }
 }
 
@@ -69,7 +90,7 @@ impl Sweep<'_> {
     /// Which form holds at a head, and which of its limits are kept there.
     fn kept_at(&mut self, head: f64) -> Option<(usize, Vec<bool>)> {
         let moment = Moment { head: Some(head), ..self.moment };
-        let (regimes, inputs) = self.station.sketch(moment).ok()??;
+        let Sketch { regimes, corrected: inputs } = self.station.sketch(moment).ok()??;
         let known = self.compiled.iter().position(|each| each.regimes == regimes);
         let index = if let Some(index) = known {
             index

@@ -140,7 +140,7 @@ pub fn sheet(structure: &'static Structure) -> Sheet {
 
 fn inputs(installation: &Installation) -> Vec<[String; 4]> {
     let choice = installation.structure.choice.map(|choice| {
-        let words: Vec<&str> = choice.options.iter().map(|(word, _)| *word).collect();
+        let words: Vec<&str> = choice.sets.iter().map(|(word, _)| *word).collect();
         let meaning = format!("{}: {}", choice.meaning, words.join(", "));
         [choice.key.to_owned(), "-".to_owned(), "-".to_owned(), meaning]
     });
@@ -185,7 +185,7 @@ fn checks(installation: &Installation) -> Vec<NumberLine> {
     let mut with_tailwater = installation.clone();
     let drowned = installation.drowned().first().copied();
     with_tailwater.second_head =
-        Some(SecondHead { drowned, modular_limit: Some(0.5), rating: None });
+        Some(SecondHead { drowned, modular_limit: Some(0.5), curve: None });
     let form = with_tailwater.forms().swap_remove(0);
     let critical = form
         .limits
@@ -292,8 +292,13 @@ fn regime_sheet(form: &Form, mut model: Model) -> RegimeSheet {
         let (by, confidence) = source.published;
         line(source.name.clone(), source.words.clone(), by.document, confidence)
     });
-    let unstated = form.unstated.iter().map(|(keys, why)| {
-        line(keys.join(", "), why.clone(), form.structure.standard.document, Confidence::Doubtful)
+    let unstated = form.unstated.iter().map(|each| {
+        line(
+            each.inputs.join(", "),
+            each.why.clone(),
+            form.structure.standard.document,
+            Confidence::Doubtful,
+        )
     });
     RegimeSheet {
         name: form.regime.clone(),
@@ -462,14 +467,22 @@ fn table_sheet(table: &crate::model::structures::PublishedTable) -> TableSheet {
 
 /// The sets of constants that a word picks, as a table with a row for each word.
 fn choice_sheet(choice: Choice) -> TableSheet {
-    let symbols: Vec<String> =
-        choice.symbols.iter().map(|(symbol, meaning)| format!("{symbol} {meaning}")).collect();
+    let symbols: Vec<String> = choice
+        .symbols
+        .iter()
+        .map(|(symbol, dimension, meaning)| {
+            format!(
+                "{symbol} {}",
+                with_unit(*meaning, &format!("[{dimension}]").replace("[1]", "1"))
+            )
+        })
+        .collect();
     TableSheet {
         what: format!("{}: {}; columns: {}", choice.key, choice.meaning, symbols.join("; ")),
         arguments: vec![choice.key.to_owned()],
-        columns: choice.symbols.iter().map(|(symbol, _)| (*symbol).to_owned()).collect(),
+        columns: choice.symbols.iter().map(|(symbol, ..)| (*symbol).to_owned()).collect(),
         rows: choice
-            .options
+            .sets
             .iter()
             .map(|(word, values)| {
                 let known = |value: &f64| Some(*value).filter(|value| !value.is_nan());

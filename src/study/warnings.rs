@@ -124,8 +124,8 @@ pub(super) fn table_warnings(setting: &mut Setting, corrected: &[f64]) -> Vec<Wa
 /// Which published numbers behind the result are quoted from memory.
 pub(super) fn memory_warning(setting: &Setting, limits: &[LimitState]) -> Option<Warning> {
     let form = setting.form.as_ref()?;
-    let numbers = form.numbers.iter().filter(|(_, confidence)| confidence.is_memory());
-    let mut from_memory: Vec<String> = numbers.map(|(what, _)| what.clone()).collect();
+    let numbers = form.numbers.iter().filter(|each| each.confidence.is_memory());
+    let mut from_memory: Vec<String> = numbers.map(|each| each.what.clone()).collect();
     for (source, row) in setting.problem.sources.iter().zip(&setting.rows) {
         if row.published.is_some_and(|(_, confidence)| confidence.is_memory()) {
             from_memory.push(format!("the uncertainty of `{}`", source.name));

@@ -6,7 +6,7 @@ use nappe::model::structures::{Installation, SecondHead, Values, find};
 /// What a station has: its structure, the size of it, its drowned-flow equation, its inputs.
 pub(crate) struct Case {
     kind: &'static str,
-    option: Option<&'static str>,
+    size: Option<&'static str>,
     drowned: Option<&'static str>,
     tailwater: bool,
     inputs: Vec<(&'static str, f64)>,
@@ -14,13 +14,13 @@ pub(crate) struct Case {
 
 impl Case {
     pub(crate) fn of(kind: &'static str, inputs: &[(&'static str, f64)]) -> Self {
-        Self { kind, option: None, drowned: None, tailwater: false, inputs: inputs.to_vec() }
+        Self { kind, size: None, drowned: None, tailwater: false, inputs: inputs.to_vec() }
     }
 
     pub(crate) fn size(self, word: &str) -> Self {
         let choice = find(self.kind).unwrap().choice.unwrap();
-        let known = choice.options[choice.find(word).unwrap()].0;
-        Self { option: Some(known), ..self }
+        let known = choice.sets[choice.find(word).unwrap()].0;
+        Self { size: Some(known), ..self }
     }
 
     pub(crate) fn drowned(self, name: &'static str) -> Self {
@@ -36,8 +36,8 @@ impl Case {
     pub(crate) fn value(&self, text: &str) -> f64 {
         let mut installed = Installation::plain(find(self.kind).unwrap());
         let structure = installed.structure;
-        if let Some(word) = self.option {
-            installed.option = structure.choice.unwrap().find(word).unwrap();
+        if let Some(word) = self.size {
+            installed.set = structure.choice.unwrap().find(word).unwrap();
         }
         if self.tailwater {
             let named = |name| structure.drowned.iter().position(|each| each.name == name);
@@ -45,7 +45,7 @@ impl Case {
             // For structures whose limit nobody published.
             let modular_limit = structure.modular.ratio.is_none().then_some(0.75);
             let modular_limit = modular_limit.filter(|_| structure.choice.is_none());
-            installed.second_head = Some(SecondHead { drowned, modular_limit, rating: None });
+            installed.second_head = Some(SecondHead { drowned, modular_limit, curve: None });
         }
         let given =
             |key: &str| self.inputs.iter().find(|(k, _)| *k == key).map(|(_, value)| *value);

@@ -1,7 +1,9 @@
 //! Derivatives of every equation of the catalogue against mpmath: `tests/data/derivatives`.
 
 use nappe::model::expression::Table;
-use nappe::model::structures::{CATALOGUE, Installation, SecondHead, Section, Values, find};
+use nappe::model::structures::{
+    CATALOGUE, Installation, SecondHead, Section, TailwaterCurve, Values, find,
+};
 use nappe::model::{Model, Outcome};
 use serde_json::Value;
 
@@ -22,7 +24,7 @@ fn points() -> Vec<Value> {
 fn installation(point: &Value) -> Installation {
     let mut installed = Installation::plain(find(point["kind"].as_str().unwrap()).unwrap());
     if let Some(word) = point["choice"].as_str() {
-        installed.option = installed.structure.choice.unwrap().find(word).unwrap();
+        installed.set = installed.structure.choice.unwrap().find(word).unwrap();
     }
     if let Some(sections) = point["sections"].as_array() {
         installed.sections = sections
@@ -40,14 +42,15 @@ fn installation(point: &Value) -> Installation {
     if let Some(name) = point["drowned"].as_str() {
         let drowned = installed.structure.drowned.iter().position(|each| each.name == name);
         assert!(installed.drowned().contains(&drowned.unwrap()), "{point}");
-        let rating = point["tailwater_table"].as_object().map(|table| {
+        let curve = point["tailwater_table"].as_object().map(|table| {
             let column = |key: &str| -> Vec<f64> {
                 table[key].as_array().unwrap().iter().map(|x| x.as_f64().unwrap()).collect()
             };
-            let rating = Table::line("tailwater_rating", &column("discharge"), &column("level"));
-            (rating.unwrap(), point["inputs"]["tailwater_head"].as_f64().unwrap())
+            let table = Table::line("tailwater_curve", &column("discharge"), &column("level"));
+            let level = point["inputs"]["tailwater_head"].as_f64().unwrap();
+            TailwaterCurve { table: table.unwrap(), level }
         });
-        installed.second_head = Some(SecondHead { drowned, modular_limit: None, rating });
+        installed.second_head = Some(SecondHead { drowned, modular_limit: None, curve });
     }
     installed
 }

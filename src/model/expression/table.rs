@@ -101,6 +101,11 @@ impl Table {
         &self.name
     }
 
+    /// The nodes of a table of one argument with their values.
+    pub fn points(&self) -> impl Iterator<Item = (f64, f64)> {
+        self.first.0.iter().copied().zip(self.values.iter().copied())
+    }
+
     /// How many arguments it takes: 1 or 2.
     pub fn arguments(&self) -> usize {
         if self.second.0.len() > 1 { 2 } else { 1 }

@@ -1,7 +1,8 @@
-//! The approach channel: its area, the total head in it, its Froude number. Shared by the structures
-//! whose standards use the total head.
+//! The approach channel: its area and widths, the total head in it, its Froude number, and what critical
+//! flow at a rectangular control needs of it.
 
 use super::input::InputSpec;
+use super::published::CriticalFlow;
 use crate::model::Limit;
 use crate::model::Unsourced;
 
@@ -46,3 +47,18 @@ pub(super) const APPROACH_SIDE_SLOPE: InputSpec = InputSpec::number(
 pub(super) const fn froude_at_most(bound: &'static str) -> Unsourced {
     Limit::at_most("Fr", bound, "Froude number of the approach")
 }
+
+/// How the velocity of approach enters an equation in the total head.
+pub(super) const THROUGH_TOTAL_HEAD: &str =
+    "through the total head H = h + alpha v^2/(2 g), solved together with the discharge";
+
+/// When an equation holds that has no form for drowned flow.
+pub(super) const WHILE_MODULAR: &str = "always: the equation holds while the flow is modular";
+
+/// A rectangular control of width `b` on a sill of height `p`, in an approach of width `B`.
+pub(super) const RECTANGULAR_CONTROL: CriticalFlow = CriticalFlow {
+    energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
+    sill: "p",
+    width: Some("b"),
+    approach: ("B", None),
+};

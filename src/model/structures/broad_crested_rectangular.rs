@@ -1,5 +1,6 @@
 //! Broad-crested weir of rectangular profile, over the full width; the coefficient is a table.
 
+use super::approach::WHILE_MODULAR;
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, HeadPosition, Implicit, InputSpec, ModularLimit,
     PublishedTable, Regime, Structure,
@@ -36,7 +37,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     }],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[("C", "C_table(h/p, h/L)"), ("Fr", "Q/((h + p)*b*sqrt(g*(h + p)))")],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C*b*h^1.5",
         implicit: Implicit::Nothing,
@@ -89,6 +90,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_3846,
         confidence: Confidence::Memory,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };
 
 /// The nodes of both ratios.

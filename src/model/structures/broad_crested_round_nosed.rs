@@ -1,10 +1,13 @@
 //! Broad-crested weir with a rounded nose and a horizontal crest; the coefficient follows from the
 //! boundary layer on the crest.
 
-use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT};
+use super::approach::{
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, RECTANGULAR_CONTROL, THROUGH_TOTAL_HEAD, TOTAL_HEAD,
+    VELOCITY_COEFFICIENT, WHILE_MODULAR,
+};
 use super::{
-    Coefficient, CoefficientRule, CriticalFlow, HeadPosition, Implicit, InputSpec,
-    KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
+    Coefficient, CoefficientRule, HeadPosition, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT,
+    ModularLimit, Regime, Structure,
 };
 use crate::model::source::{ISO_4374, PRACTICE};
 use crate::model::{Confidence, Limit};
@@ -40,10 +43,10 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             ("C_b", "1 - 2*x_delta*L/b"),
-            ("C_h", "(1 - x_delta*L/h)^1.5"),
+            super::throat::BED_LOSS,
             ("C_D", "C_b*C_h"),
             RECTANGULAR,
             TOTAL_HEAD,
@@ -88,14 +91,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: PRACTICE,
         confidence: Confidence::Doubtful,
     },
-    critical: Some(CriticalFlow {
-        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
-        sill: "p",
-        width: Some("b"),
-        approach: ("B", None),
-    }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the \
-                           discharge",
+    critical: Some(RECTANGULAR_CONTROL),
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "3 to 4 times the largest total head upstream of the nose",
         nearest: Some("3*H"),
@@ -103,4 +100,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_4374,
         confidence: Confidence::Memory,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };

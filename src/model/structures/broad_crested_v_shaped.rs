@@ -1,9 +1,12 @@
 //! Broad-crested weir of V-shaped section: critical flow in a triangle, or in a triangle between vertical
 //! walls.
 
-use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT};
+use super::approach::{
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, THROUGH_TOTAL_HEAD, TOTAL_HEAD, VELOCITY_COEFFICIENT,
+    WHILE_MODULAR,
+};
 use super::{
-    Coefficient, CoefficientRule, CriticalFlow, HeadPosition, Implicit, InputSpec,
+    Coefficient, CoefficientRule, Constant, CriticalFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, Regime, Structure,
 };
 use crate::model::source::{ISO_8333, LONG_THROATED, PRACTICE};
@@ -24,7 +27,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             meaning: "full angle of the V",
             default: None,
             domain: [60.0 * DEGREE, 175.0 * DEGREE],
-            domain_reason: "a V-shaped crest has 90 to 150 degrees",
+            domain_reason: "60 to 175 degrees are due; a standard describes 90 to 150",
             example: "120 deg",
         },
         InputSpec::length(
@@ -38,22 +41,40 @@ pub(super) static STRUCTURE: Structure = Structure {
             "crest_length_along_flow",
             "L",
             "length of the crest along the flow",
-            "0.80 m",
+            "0.50 m",
         ),
         InputSpec { example: "1.50 m", ..APPROACH_WIDTH },
         KINETIC_ENERGY_COEFFICIENT,
     ],
     choice: None,
-    constants: &[],
+    constants: &[
+        Constant {
+            symbol: "C_shift",
+            value: 0.07,
+            dimension: Dimension::NONE,
+            meaning: "shift of H/L in the coefficient of long-throated structures, which stands in for the \
+                      standard's table, not known here",
+            source: LONG_THROATED,
+            confidence: Confidence::Memory,
+        },
+        Constant {
+            symbol: "C_exponent",
+            value: 0.018,
+            dimension: Dimension::NONE,
+            meaning: "exponent in the same coefficient",
+            source: LONG_THROATED,
+            confidence: Confidence::Memory,
+        },
+    ],
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             RECTANGULAR,
             TOTAL_HEAD,
             // The coefficient is published for H/L from 0.1 to 1: its ends are held.
-            ("C_D", "(min(max(H/L, 0.1), 1) - 0.07)^0.018"),
+            ("C_D", "(min(max(H/L, 0.1), 1) - C_shift)^C_exponent"),
             ("b_top", "2*H_b*tan(theta/2)"),
             (
                 "Q_ideal",
@@ -109,8 +130,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         width: None,
         approach: ("B", None),
     }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the \
-                           discharge",
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "3 to 4 times the largest total head upstream",
         nearest: Some("3*H"),
@@ -118,4 +138,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_8333,
         confidence: Confidence::Memory,
     },
+    head_in_approach: true,
+    control_width: None,
 };

@@ -3,18 +3,20 @@
 //! Every section keeps its own texts; their names get the number of the section. What the sections share
 //! (gravity, the approach, its total head) is put in the place of their own.
 
-use std::collections::BTreeSet;
+use std::collections::{BTreeMap, BTreeSet};
 
 use super::approach::{LARGEST_FLOW, RECTANGULAR, TOTAL_HEAD};
+use super::automatic::{AutomaticSource, Unstated, sources};
 use super::form::{
-    Form, InstalledLimit, add_sources, add_tailwater, constants, drowned_flow, extend,
-    factor_definitions, identifiers, modular_limit, numbers,
+    Form, PublishedNumber, add_tailwater, constants, drowned_flow, extend, factor_definitions,
+    identifiers, numbers,
 };
 use super::input::{
     COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, InputSpec, InstalledInput, KINETIC_ENERGY_COEFFICIENT,
     Values,
 };
 use super::installation::{Installation, Section};
+use super::limit::{InstalledLimit, modular_limit};
 use super::structure::{Implicit, Regime, Structure};
 use crate::model::{Blueprint, UnknownText};
 use crate::units::Dimension;
@@ -25,15 +27,6 @@ pub const CREST_LEVEL: InputSpec = InputSpec {
     domain_reason: "it is the height above the lowest crest, between 0 m and 20 m",
     ..InputSpec::length("crest_level", "z", "level of its crest above the lowest crest", "0.15 m")
 };
-
-/// Kinds whose head is read inside the structure, not in an approach that sections could share; and the
-/// compound weir itself.
-const ALONE: [&str; 3] = ["compound", "end-depth", "parshall-flume"];
-
-/// Whether a structure can be a section: its head is read in the common approach.
-pub fn can_be_section(structure: &Structure) -> bool {
-    !ALONE.contains(&structure.kind)
-}
 
 /// The head that stands in for that of a dry section.
 const LEAST_HEAD: &str = "h_least";
@@ -51,7 +44,8 @@ pub fn section_inputs(structure: &'static Structure) -> Vec<InputSpec> {
         .copied()
         .filter(|spec| spec.key != KINETIC_ENERGY_COEFFICIENT.key)
         .filter(|spec| used.contains(spec.symbol))
-        .map(|spec| if spec.key == "crest_height" { spec.optional() } else { spec })
+        // The height above the bed follows from that of the whole and the level of the crest.
+        .map(|spec| if spec.symbol == "p" { spec.optional() } else { spec })
         .chain([COEFFICIENT_FACTOR])
         .collect()
 }
@@ -105,20 +99,28 @@ pub(super) fn inputs(
     specs
         .into_iter()
         .map(|spec| InstalledInput {
-            key: format!("section {number} {}", spec.key),
-            symbol: numbered(spec.symbol, number),
+            key: section_key(number, spec.key),
+            symbol: section_symbol(number, spec.symbol),
             spec,
         })
         .collect()
 }
 
-fn numbered(name: &str, number: usize) -> String {
-    // Not `_2`: that is how the second head is written.
-    format!("{name}_s{number}")
+/// The key of an input of a section, numbered from 1.
+pub fn section_key(number: usize, key: &str) -> String {
+    format!("section {number} {key}")
 }
 
-/// A text of a section with its own names numbered.
-fn number_names(text: &str, number: usize, own: &BTreeSet<String>) -> String {
+/// Its symbol. Not `_2`: that is how the second head is written.
+pub fn section_symbol(number: usize, symbol: &str) -> String {
+    format!("{symbol}_s{number}")
+}
+
+/// Names of a section and what stands for them in the whole.
+type Renamed = BTreeMap<String, String>;
+
+/// A text of a section with its own names replaced.
+fn rename(text: &str, names: &Renamed) -> String {
     let mut result = String::new();
     let mut rest = text;
     while let Some(start) = rest.find(|c: char| c.is_alphabetic()) {
@@ -129,11 +131,7 @@ fn number_names(text: &str, number: usize, own: &BTreeSet<String>) -> String {
             .unwrap_or(rest.len() - start);
         let word = &rest[start..start + length];
         result.push_str(&rest[..start]);
-        if own.contains(word) && !inside_number {
-            result.push_str(&numbered(word, number));
-        } else {
-            result.push_str(word);
-        }
+        result.push_str(names.get(word).filter(|_| !inside_number).map_or(word, String::as_str));
         rest = &rest[start + length..];
     }
     result.push_str(rest);
@@ -180,7 +178,8 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
         beyond.extend(added.beyond);
     }
     result.regime = regimes.join("; ");
-    let sum: Vec<String> = (1..=installation.sections.len()).map(|n| numbered("Q", n)).collect();
+    let sum: Vec<String> =
+        (1..=installation.sections.len()).map(|n| section_symbol(n, "Q")).collect();
     let discharge = UnknownText {
         name: "Q".to_owned(),
         equation: format!("Q = {}", sum.join(" + ")),
@@ -242,9 +241,11 @@ fn add_section(
     if has_height {
         own.insert("p".to_owned());
     }
-    let name = |text: &str| number_names(text, number, &own);
+    let names: Renamed =
+        own.iter().map(|name| (name.clone(), section_symbol(number, name))).collect();
+    let name = |text: &str| rename(text, &names);
 
-    let level = numbered(CREST_LEVEL.symbol, number);
+    let level = section_symbol(number, CREST_LEVEL.symbol);
     let texts = &mut to.blueprint.definitions;
     texts.push((name("h"), format!("h - {level}")));
     if regime.implicit == Implicit::Discharge {
@@ -262,9 +263,11 @@ fn add_section(
     let flowing = name(if by_total_head { "H" } else { regime.flowing });
     if let Some(solved) = regime.solved {
         // A dry section has no such quantity; a hair of water in its place keeps every slope a number.
-        let wet = numbered("H_wet", number);
+        let wet = section_symbol(number, "H_wet");
         texts.push((wet.clone(), format!("max({}, {LEAST_HEAD})", name("H"))));
-        let of_wet = |text: &str| name(text).replace(&name("H"), &wet);
+        let mut of_wet_names = names.clone();
+        of_wet_names.insert("H".to_owned(), wet);
+        let of_wet = |text: &str| rename(text, &of_wet_names);
         to.blueprint.unknowns.push(UnknownText {
             name: name(solved.name),
             equation: of_wet(solved.equation),
@@ -292,23 +295,13 @@ fn add_section(
     }
     let modular = tailwater_known.then(|| modular_limit(installation));
     add_limits(structure, regime, &name, (number, &flowing), &own, modular, to);
-    let mut sources = Form { automatic: Vec::new(), unstated: Vec::new(), ..to.clone() };
-    add_sources(structure, regime, drowned, &mut sources);
-    to.automatic.extend(sources.automatic.into_iter().map(|source| super::AutomaticSource {
-        name: format!("{}, section {number}", source.name),
-        acts_on: format!("section {number} {}", source.acts_on),
-        // A section that passes nothing adds nothing.
-        rule: format!("({}) when {flowing} > 0 otherwise 0", name(&source.rule)),
-        ..source
-    }));
-    to.unstated.extend(sources.unstated.into_iter().map(|(keys, why)| {
-        (keys.into_iter().map(|key| format!("section {number} {key}")).collect(), why)
-    }));
+    add_sources((number, &flowing), sources(structure, regime, drowned), &name, to);
     to.blueprint.borders.extend((regime.borders)(&own_values).iter().map(|text| name(text)));
     to.numbers.extend(
-        numbers(installation, regime, drowned)
-            .into_iter()
-            .map(|(what, confidence)| (format!("{what} (section {number})"), confidence)),
+        numbers(installation, regime, drowned).into_iter().map(|each| PublishedNumber {
+            what: format!("section {number}: {}", each.what),
+            ..each
+        }),
     );
     let left = [regime.beyond, drowned.and_then(|drowned| drowned.beyond)];
     let left: Vec<String> = left
@@ -321,6 +314,26 @@ fn add_section(
         .collect();
     let beyond = (!left.is_empty()).then(|| left.join(" + "));
     Added { regime: regime.name, flowing, beyond }
+}
+
+/// The section's published uncertainties, and what it leaves to the user.
+fn add_sources(
+    (number, flowing): (usize, &str),
+    (automatic, unstated): (Vec<AutomaticSource>, Vec<Unstated>),
+    name: &dyn Fn(&str) -> String,
+    to: &mut Form,
+) {
+    to.automatic.extend(automatic.into_iter().map(|source| AutomaticSource {
+        name: format!("{}, section {number}", source.name),
+        acts_on: section_key(number, &source.acts_on),
+        // A section that passes nothing adds nothing.
+        rule: format!("({}) when {flowing} > 0 otherwise 0", name(&source.rule)),
+        ..source
+    }));
+    to.unstated.extend(unstated.into_iter().map(|each| Unstated {
+        inputs: each.inputs.iter().map(|key| section_key(number, key)).collect(),
+        ..each
+    }));
 }
 
 /// The section's limits that the shared approach leaves a meaning, and its modular limit.
@@ -356,15 +369,15 @@ fn add_limits(
 
 /// The indicated values of one section: its own inputs, and the head above its crest.
 fn section_values(values: &Values, number: usize) -> Values {
-    let prefix = format!("section {number} ");
+    let prefix = section_key(number, "");
     let level = values.given(&format!("{prefix}{}", CREST_LEVEL.key)).unwrap_or(0.0);
     let own = values
         .iter()
         .filter_map(|(key, value)| Some((key.strip_prefix(&prefix)?.to_owned(), value)))
         .collect::<Vec<_>>();
-    let height = own.iter().any(|(key, _)| key == "crest_height");
     let whole = values.given("crest_height").map(|height| height + level);
-    let derived = (!height).then(|| ("crest_height".to_owned(), whole));
+    let stated = own.iter().any(|(key, _)| key == "crest_height");
+    let derived = (!stated).then(|| ("crest_height".to_owned(), whole));
     let head = ("head".to_owned(), values.given("head").map(|head| head - level));
     Values::new(own.into_iter().chain(derived).chain([head]))
 }

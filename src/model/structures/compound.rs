@@ -1,7 +1,6 @@
 //! Compound weir: structures side by side, separated by divide piers, that share one total head.
 
 use super::approach::{APPROACH_WIDTH, FROUDE, froude_at_most};
-use super::composition::can_be_section;
 use super::installation::{Installation, Section};
 use super::published::{Coefficient, HeadPosition, ModularLimit};
 use super::structure::{Implicit, Regime, Structure};
@@ -40,7 +39,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         beyond: None,
         borders: |_| &[],
         limits: &[froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
-        coefficient: Coefficient::FromUser("each section has its own"),
+        coefficient: Coefficient::FromUser { inputs: &[], why: "each section has its own" },
     }],
     regime_for: |_| 0,
     adjustments: &[],
@@ -62,11 +61,12 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_14139,
         confidence: Confidence::Memory,
     },
+    head_in_approach: false,
+    control_width: None,
 };
 
 /// Two sections of triangular profile, for a sheet of the catalogue.
 pub(super) fn example() -> Vec<Section> {
-    debug_assert!(can_be_section(&triangular_profile::STRUCTURE));
     let section = || Section {
         installation: Installation::plain(&triangular_profile::STRUCTURE),
         given: vec!["crest_width".to_owned()],

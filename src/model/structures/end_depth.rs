@@ -6,6 +6,7 @@ use super::{
 };
 use crate::model::source::ISO_18481;
 use crate::model::{Confidence, Limit};
+use crate::units::Dimension;
 
 pub(super) static STRUCTURE: Structure = Structure {
     kind: "end-depth",
@@ -15,8 +16,11 @@ pub(super) static STRUCTURE: Structure = Structure {
     choice: Some(Choice {
         key: "nappe",
         meaning: "coefficient of the nappe: confined between walls that go on, or unconfined",
-        symbols: &[("C", "coefficient"), ("X", "its uncertainty, per cent at 95 %")],
-        options: &[("confined", &[1.66, 2.0]), ("unconfined", &[1.69, 3.0])],
+        symbols: &[
+            ("C", Dimension::NONE, "coefficient"),
+            ("X", Dimension::NONE, "its uncertainty, per cent at 95 %"),
+        ],
+        sets: &[("confined", &[1.66, 2.0]), ("unconfined", &[1.69, 3.0])],
         example: "confined",
         source: ISO_18481,
         confidence: Confidence::MemoryConfirmed,
@@ -64,4 +68,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_18481,
         confidence: Confidence::Memory,
     },
+    head_in_approach: false,
+    control_width: None,
 };

@@ -1,6 +1,8 @@
 //! Flat-V weir, slopes 1:2 and 1:5 along the flow, vertical side walls; drowned flow by a crest tapping.
 
-use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, froude_at_most};
+use super::approach::{
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, THROUGH_TOTAL_HEAD, TOTAL_HEAD, froude_at_most,
+};
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, PublishedTable, Regime, SecondHeadAt,
@@ -25,7 +27,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             "n",
             "cross-slope of the crest, horizontal per vertical",
             [5.0, 100.0],
-            "a flat V falls 1 in 10 to 1 in 40 towards its middle",
+            "a slope of 1:5 to 1:100 is due; coefficients are published for 1:10 to 1:40",
             "20",
         ),
         InputSpec::length(
@@ -112,9 +114,9 @@ pub(super) static STRUCTURE: Structure = Structure {
         name: "crest tapping",
         when: "the second head is that at the crest tapping",
         definitions: &[
-            ("S", "max((h_2 - k_h)/h_e, 0)"),
+            ("S", "max(h_2 - k_h, 0)/h_e"),
             ("f_published", "1.078*(0.909 - S^1.5)^0.183"),
-            ("f", "F_f*f_published when f_published < 1 otherwise 1"),
+            ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
         ],
         needs: &[],
         beyond: None,
@@ -140,8 +142,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         width: None,
         approach: ("B", None),
     }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the \
-                           discharge",
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "10 times the depth of the V upstream of the crest line, not less than 3 times the largest \
                 total head",
@@ -150,6 +151,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: PRACTICE,
         confidence: Confidence::Doubtful,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };
 
 /// Cross-slopes at which coefficients are published; between them they are interpolated here.

@@ -1,8 +1,6 @@
 //! The inputs of structures: what a station file gives, and the ones that all structures share.
 
-use crate::model::source::ISO_1438;
-use crate::model::structures::published::Adjustment;
-use crate::model::{Confidence, Input};
+use crate::model::Input;
 use crate::units::Dimension;
 
 /// An input of a structure.
@@ -213,34 +211,4 @@ pub const DROWNED_FLOW_FACTOR: InputSpec = InputSpec {
     symbol: "F_f",
     meaning: "factor on the published drowned-flow factor",
     ..COEFFICIENT_FACTOR
-};
-
-/// Shifts the published head adjustment.
-pub(super) const HEAD_ADJUSTMENT: InputSpec = InputSpec {
-    key: "head_adjustment",
-    symbol: "dk_h",
-    dimension: Dimension::LENGTH,
-    meaning: "shift of the published head adjustment k_h",
-    default: Some(0.0),
-    domain: [-0.01, 0.01],
-    domain_reason: "it shifts an adjustment of about a millimetre",
-    example: "0 mm",
-};
-
-/// Shifts the published width adjustment.
-pub(super) const WIDTH_ADJUSTMENT: InputSpec = InputSpec {
-    key: "width_adjustment",
-    symbol: "dk_b",
-    meaning: "shift of the published width adjustment k_b",
-    ..HEAD_ADJUSTMENT
-};
-
-/// The published uncertainty of `k_h` of thin plates.
-pub(super) const PUBLISHED_HEAD_ADJUSTMENT: Adjustment = Adjustment {
-    name: "published head adjustment",
-    acts_on: "head_adjustment",
-    standard_uncertainty: "0.00015",
-    words: "0.3 mm at 95 % for k_h",
-    source: ISO_1438,
-    confidence: Confidence::Memory,
 };

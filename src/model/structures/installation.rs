@@ -1,20 +1,23 @@
 //! A structure as it is installed: with its size, its second head, its sections.
 
-use super::form::{Form, identifiers, single};
+use super::automatic::Unstated;
+use super::form::{Form, drowned_flow, identifiers, single};
 use super::input::{
     COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, GRAVITY, HEAD, InstalledInput, TAILWATER_HEAD, Values,
 };
+use super::published::{MODULAR_LIMIT, ModularRatio};
 use super::structure::Structure;
 use super::{composition, compound};
 use crate::model::expression::Table;
+use crate::units::Dimension;
 
 /// A structure as it is installed.
 #[derive(Clone, Debug)]
 pub struct Installation {
     /// What it is.
     pub structure: &'static Structure,
-    /// Which option of its choice; of no meaning where it has none.
-    pub option: usize,
+    /// Which set of its choice; of no meaning where it has none.
+    pub set: usize,
     /// What is known of the second head; `None` where the file says nothing.
     pub second_head: Option<SecondHead>,
     /// Its sections, if it is a compound weir.
@@ -36,22 +39,32 @@ pub struct Section {
 pub struct SecondHead {
     /// Which of the structure's drowned-flow equations takes over; `None` where it has none.
     pub drowned: Option<usize>,
-    /// A modular limit in place of the published one.
+    /// A modular limit in place of the published one, for the check; on Parshall flumes the equation for
+    /// drowned flow begins there as well.
     pub modular_limit: Option<f64>,
-    /// The level against discharge, m against m3/s, and the level that it gives at the values asked
-    /// about; without it the second head is an input by itself.
-    pub rating: Option<(Table, f64)>,
+    /// Its level against the discharge; without it the second head is an input by itself.
+    pub curve: Option<TailwaterCurve>,
+}
+
+/// The level of a tailwater that follows the discharge.
+#[derive(Clone, Debug, PartialEq)]
+pub struct TailwaterCurve {
+    /// Level above the crest, m, against discharge, m3/s.
+    pub table: Table,
+    /// The level that it gives at the values asked about, m: the input `tailwater_head` shifts it from
+    /// there.
+    pub level: f64,
 }
 
 impl Installation {
-    /// A structure by itself, its first option, the tailwater unknown; a compound weir with two sections
+    /// A structure by itself, its usual set, the tailwater unknown; a compound weir with two sections
     /// of triangular profile.
     pub fn plain(structure: &'static Structure) -> Self {
         let sections =
             if structure.kind == compound::KIND { compound::example() } else { Vec::new() };
         let word = structure.choice.map_or("", |choice| choice.example);
-        let option = structure.choice.and_then(|choice| choice.find(word)).unwrap_or(0);
-        Self { structure, option, second_head: None, sections }
+        let set = structure.choice.and_then(|choice| choice.find(word)).unwrap_or(0);
+        Self { structure, set, second_head: None, sections }
     }
 
     /// Whether gravity is in its equation by itself; it is inside some published coefficients.
@@ -66,18 +79,35 @@ impl Installation {
     /// Places of the drowned-flow equations that are published for it.
     pub fn drowned(&self) -> Vec<usize> {
         let known = |symbol: &&str| {
-            self.constants_of_option().iter().any(|(name, value)| name == symbol && !value.is_nan())
+            self.constants_of_set().iter().any(|(name, value, _)| name == symbol && !value.is_nan())
         };
         (0..self.structure.drowned.len())
             .filter(|index| self.structure.drowned[*index].needs.iter().all(known))
             .collect()
     }
 
-    /// The constants of the option, NaN where none is published.
-    pub(super) fn constants_of_option(&self) -> Vec<(&'static str, f64)> {
+    /// The constants of its set, NaN where none is published.
+    pub(super) fn constants_of_set(&self) -> Vec<(&'static str, f64, Dimension)> {
         let Some(choice) = self.structure.choice else { return Vec::new() };
-        let names = choice.symbols.iter().map(|(symbol, _)| *symbol);
-        names.zip(choice.options[self.option].1.iter().copied()).collect()
+        let values = choice.sets[self.set].1.iter();
+        let symbols = choice.symbols.iter().zip(values);
+        symbols.map(|((symbol, dimension, _), value)| (*symbol, *value, *dimension)).collect()
+    }
+
+    /// The ratio of heads up to which its flow is modular: the file's, that of the drowned-flow equation in
+    /// force, of its set, or of its structure. `None` where the limit is no ratio, or none is known.
+    pub fn modular_limit(&self) -> Option<f64> {
+        let of_set = |name: &str| {
+            let found = self.constants_of_set().into_iter().find(|(symbol, ..)| *symbol == name);
+            found.map(|(_, value, _)| value).filter(|value| !value.is_nan())
+        };
+        let stated = self.second_head.as_ref().and_then(|second| second.modular_limit);
+        let of_equation = drowned_flow(self).and_then(|drowned| match drowned.ratio {
+            ModularRatio::OfStructure => None,
+            ModularRatio::Own(ratio) => Some(ratio),
+            ModularRatio::OfChoice(name) => of_set(name),
+        });
+        stated.or(of_equation).or(self.structure.modular.ratio).or_else(|| of_set(MODULAR_LIMIT))
     }
 
     /// All inputs: the head, the structure's own, the factor on the coefficient, gravity; those of the
@@ -94,7 +124,7 @@ impl Installation {
         }
         if let Some(second) = &self.second_head {
             let mut tailwater = InstalledInput::from(TAILWATER_HEAD);
-            if second.rating.is_some() {
+            if second.curve.is_some() {
                 SHIFTED_TAILWATER.clone_into(&mut tailwater.symbol);
             }
             inputs.push(tailwater);
@@ -123,7 +153,7 @@ impl Installation {
         }
     }
 
-    /// Every form of the equation, for a sheet of the catalogue.
+    /// Every form that the equation of a structure by itself takes; the one of a compound weir.
     pub fn forms(&self) -> Vec<Form> {
         if self.sections.is_empty() {
             let values = Values::default();
@@ -135,7 +165,7 @@ impl Installation {
 
     /// Inputs of which no uncertainty is published, so that a source of the user's must act on one of
     /// each list; and why.
-    pub fn unstated(&self) -> Vec<(Vec<String>, String)> {
+    pub fn unstated(&self) -> Vec<Unstated> {
         self.forms().swap_remove(0).unstated
     }
 

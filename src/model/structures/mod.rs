@@ -5,22 +5,27 @@
 //! every number. [`Installation`] is a structure as a station has it, [`Form`] its equation there.
 
 mod approach;
+mod automatic;
 mod composition;
 mod form;
 mod input;
 mod installation;
+mod limit;
 mod published;
 mod structure;
+mod thin_plate;
 mod throat;
 
-pub use composition::{CREST_LEVEL, can_be_section, section_inputs};
+pub use automatic::{AutomaticSource, PUBLISHED_COEFFICIENT, Unstated};
+pub use composition::{CREST_LEVEL, section_inputs, section_key, section_symbol};
 pub use compound::KIND as COMPOUND;
-pub use form::{AutomaticSource, Form, InstalledLimit, LimitKind, PUBLISHED_COEFFICIENT};
+pub use form::{Form, PublishedNumber};
 pub use input::{
     COEFFICIENT_FACTOR, DROWNED_FLOW_FACTOR, GRAVITY, HEAD, InputSpec, InstalledInput,
     KINETIC_ENERGY_COEFFICIENT, TAILWATER_HEAD, Values,
 };
-pub use installation::{Installation, SecondHead, Section};
+pub use installation::{Installation, SecondHead, Section, TailwaterCurve};
+pub use limit::{InstalledLimit, LimitKind};
 pub use published::{
     Adjustment, Choice, Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow,
     HeadPosition, ModularLimit, ModularRatio, PublishedTable, SecondHeadAt,

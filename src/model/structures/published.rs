@@ -49,10 +49,10 @@ pub struct Choice {
     pub key: &'static str,
     /// What it picks.
     pub meaning: &'static str,
-    /// The constants of a set: symbol and meaning. Pure numbers; lengths are in metres.
-    pub symbols: &'static [(&'static str, &'static str)],
-    /// The words, each with its constants; NaN where none is published.
-    pub options: &'static [(&'static str, &'static [f64])],
+    /// The constants of a set: symbol, dimension and meaning.
+    pub symbols: &'static [(&'static str, Dimension, &'static str)],
+    /// The words, each with its constants in SI units; NaN where none is published.
+    pub sets: &'static [(&'static str, &'static [f64])],
     /// The word for a new file.
     pub example: &'static str,
     /// Who published them.
@@ -66,8 +66,13 @@ pub struct Choice {
 pub enum Coefficient {
     /// A published rule.
     Published(CoefficientRule),
-    /// None that could be stated here: the user states it, and why that is so.
-    FromUser(&'static str),
+    /// None that could be stated here: the user states it.
+    FromUser {
+        /// The inputs of which a source must act on one.
+        inputs: &'static [&'static str],
+        /// Why that is so.
+        why: &'static str,
+    },
 }
 
 /// The published uncertainty of a coefficient.
@@ -178,6 +183,16 @@ pub struct CriticalFlow {
     pub approach: (&'static str, Option<&'static str>),
 }
 
+/// The symbol of the modular limit as a ratio of heads.
+pub(super) const MODULAR_LIMIT: &str = "M_L";
+
+impl ModularLimit {
+    /// The limit is a ratio of heads.
+    pub fn is_ratio(&self) -> bool {
+        self.highest.contains(MODULAR_LIMIT)
+    }
+}
+
 /// Where the head is to be measured.
 #[derive(Clone, Copy, Debug)]
 pub struct HeadPosition {
@@ -215,14 +230,14 @@ impl PublishedTable {
 }
 
 impl Choice {
-    /// The option that a file means: its word, or another way to write the same size (`0.3 m` for
+    /// The set that a file means: its word, or another way to write the same size (`0.3 m` for
     /// `0.30 m`).
     pub fn find(&self, word: &str) -> Option<usize> {
         let same = |known: &str| match (number_and_rest(known), number_and_rest(word)) {
             (Some(a), Some(b)) => a == b,
             _ => known == word.trim(),
         };
-        self.options.iter().position(|(known, _)| same(known))
+        self.sets.iter().position(|(known, _)| same(known))
     }
 }
 

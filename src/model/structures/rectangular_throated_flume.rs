@@ -1,8 +1,8 @@
 //! Long-throated flume with a rectangular throat, total head with velocity of approach.
 
 use super::approach::{
-    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, TOP_WIDTH, TOTAL_HEAD, TRAPEZOIDAL,
-    VELOCITY_COEFFICIENT,
+    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, RECTANGULAR_CONTROL,
+    THROUGH_TOTAL_HEAD, TOP_WIDTH, TOTAL_HEAD, TRAPEZOIDAL, VELOCITY_COEFFICIENT, WHILE_MODULAR,
 };
 use super::{
     CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Structure, throat,
@@ -32,7 +32,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             throat::BED_LOSS,
             ("C_D", "(1 - 2*x_delta*L/b)*C_h"),
@@ -68,12 +68,9 @@ pub(super) static STRUCTURE: Structure = Structure {
     adjustments: &[],
     drowned: &[],
     modular: throat::MODULAR,
-    critical: Some(CriticalFlow {
-        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
-        sill: "p",
-        width: Some("b"),
-        approach: ("B", Some("m_a")),
-    }),
-    velocity_of_approach: throat::VELOCITY_OF_APPROACH,
+    critical: Some(CriticalFlow { approach: ("B", Some("m_a")), ..RECTANGULAR_CONTROL }),
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: throat::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: Some("throat_width"),
 };

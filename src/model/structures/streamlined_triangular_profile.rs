@@ -1,9 +1,12 @@
 //! Streamlined triangular profile weir: the coefficient comes from the user.
 
-use super::approach::{APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT};
+use super::approach::{
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, RECTANGULAR_CONTROL, THROUGH_TOTAL_HEAD, TOTAL_HEAD,
+    VELOCITY_COEFFICIENT, WHILE_MODULAR,
+};
 use super::{
-    Coefficient, CriticalFlow, HeadPosition, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT,
-    ModularLimit, Regime, Structure,
+    Coefficient, HeadPosition, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit,
+    Regime, Structure,
 };
 use crate::model::Confidence;
 use crate::model::source::{ISO_9827, PRACTICE};
@@ -31,7 +34,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT, FROUDE],
         discharge: "(2/3)^1.5*sqrt(g)*F_C*C_D*b*H^1.5",
         implicit: Implicit::Discharge,
@@ -40,10 +43,11 @@ pub(super) static STRUCTURE: Structure = Structure {
         beyond: None,
         borders: |_| &[],
         limits: &[super::approach::froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
-        coefficient: Coefficient::FromUser(
-            "the coefficient of this profile and its uncertainty are not known here: state both from \
-             your copy of ISO 9827 or from a rating",
-        ),
+        coefficient: Coefficient::FromUser {
+            inputs: &["discharge_coefficient", "coefficient_factor"],
+            why: "the coefficient of this profile and its uncertainty are not known here: state both from \
+                  your copy of ISO 9827 or from a rating",
+        },
     }],
     regime_for: |_| 0,
     adjustments: &[],
@@ -55,13 +59,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_9827,
         confidence: Confidence::Doubtful,
     },
-    critical: Some(CriticalFlow {
-        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
-        sill: "p",
-        width: Some("b"),
-        approach: ("B", None),
-    }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the discharge",
+    critical: Some(RECTANGULAR_CONTROL),
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "not known here: see your copy of the standard",
         nearest: None,
@@ -69,4 +68,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_9827,
         confidence: Confidence::Doubtful,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };

@@ -41,6 +41,10 @@ pub struct Structure {
     pub velocity_of_approach: &'static str,
     /// Where the head is to be measured.
     pub head_measured: HeadPosition,
+    /// The head is read in the approach channel, which other structures beside it could share.
+    pub head_in_approach: bool,
+    /// The key of the control's width, no wider than the approach; `None` where it has none.
+    pub control_width: Option<&'static str>,
 }
 
 /// One form of a structure's equation.

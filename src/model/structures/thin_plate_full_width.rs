@@ -1,10 +1,10 @@
 //! Thin-plate weir over the full width of the channel, Rehbock form; drowned flow by two published
 //! factors.
 
-use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
+use super::thin_plate::{self, HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
 use super::{
-    Coefficient, CoefficientRule, Constant, DrownedFlow, HeadPosition, Implicit, InputSpec,
-    ModularLimit, ModularRatio, Regime, SecondHeadAt, Structure,
+    CoefficientRule, Constant, DrownedFlow, Implicit, InputSpec, ModularRatio, Regime,
+    SecondHeadAt, Structure,
 };
 use crate::model::source::{ISO_1438, REHBOCK, VILLEMONTE};
 use crate::model::{Citation, Confidence, Limit};
@@ -74,12 +74,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             )
             .by(ISO_1438, Confidence::Memory),
         ],
-        coefficient: Coefficient::Published(CoefficientRule {
-            words: "at 95 %: 1.5 % for h/p up to 1.0, 2 % up to 1.5, 3 % up to 2.5",
-            percent: "1.5 when h <= p otherwise 2 when h <= 1.5*p otherwise 3",
-            source: ISO_1438,
-            confidence: Confidence::Memory,
-        }),
+        coefficient: thin_plate::COEFFICIENT,
     }],
     regime_for: |_| 0,
     adjustments: &[PUBLISHED_HEAD_ADJUSTMENT],
@@ -97,30 +92,20 @@ pub(super) static STRUCTURE: Structure = Structure {
             (VILLEMONTE, Confidence::Memory),
         ),
     ],
-    modular: ModularLimit {
-        words: "free, ventilated nappe: tailwater at least about 0.1 m below the crest",
-        ratio: None,
-        highest: "-0.1",
-        source: ISO_1438,
-        confidence: Confidence::Memory,
-    },
+    modular: thin_plate::FREE_NAPPE,
     critical: None,
     velocity_of_approach: "inside the coefficient, through h/p: the gauged head is used",
-    head_measured: HeadPosition {
-        words: "4 to 5 times the largest head upstream of the plate",
-        nearest: Some("4*h"),
-        farthest: Some("5*h"),
-        source: ISO_1438,
-        confidence: Confidence::Memory,
-    },
+    head_measured: thin_plate::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };
 
 /// Water below the crest drowns nothing.
-const RATIO: (&str, &str) = ("S", "max(h_2/h, 0)");
+const RATIO: (&str, &str) = ("S", "max(h_2, 0)/h");
 const ISO_FACTOR: (&str, &str) = ("f_ISO", "1.007*(0.975 - S^1.45)^0.265");
 const VILLEMONTE_FACTOR: (&str, &str) = ("f_Villemonte", "(1 - S^1.5)^0.385");
 /// No factor is above 1.
-const FACTOR: (&str, &str) = ("f", "F_f*f_published when f_published < 1 otherwise 1");
+const FACTOR: (&str, &str) = ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)");
 
 /// One of the two factors; that they differ, by 4 % at a ratio of heads of 0.5 and 13 % at 0.8, is the uncertainty of
 /// each.

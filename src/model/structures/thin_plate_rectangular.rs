@@ -1,11 +1,8 @@
 //! Rectangular thin-plate weir, Kindsvater-Carter equation, all ratios of crest to approach width.
 
 use super::approach::{APPROACH_SIDE_SLOPE, MEAN_WIDTH};
-use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT, WIDTH_ADJUSTMENT};
-use super::{
-    Adjustment, Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec,
-    ModularLimit, PublishedTable, Regime, Structure, Values,
-};
+use super::thin_plate::{self, HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT, WIDTH_ADJUSTMENT};
+use super::{Adjustment, Constant, Implicit, InputSpec, PublishedTable, Regime, Structure, Values};
 use crate::model::source::{FENTON, ISO_1438, KINDSVATER_CARTER};
 use crate::model::{Confidence, Limit};
 use crate::units::Dimension;
@@ -110,7 +107,7 @@ pub(super) static STRUCTURE: Structure = Structure {
                 Limit::at_least("(B_m - b)/2", "0.10", "side contraction on each side")
                     .by(ISO_1438, Confidence::Memory),
             ],
-            coefficient: COEFFICIENT,
+            coefficient: thin_plate::COEFFICIENT,
         },
         Regime {
             name: "full width",
@@ -130,11 +127,13 @@ pub(super) static STRUCTURE: Structure = Structure {
             beyond: None,
             borders: |_| &[],
             limits: &[MIN_HEAD, MIN_WIDTH, MIN_HEIGHT, MAX_RATIO],
-            coefficient: COEFFICIENT,
+            coefficient: thin_plate::COEFFICIENT,
         },
     ],
     regime_for: |values: &Values| match values.given("approach_width") {
         None => 1,
+        // A channel that widens upwards has no one pair of walls.
+        Some(_) if values.given("approach_side_slope").is_some_and(|slope| slope > 0.0) => 0,
         Some(approach) => usize::from(approach == values.value("crest_width")),
     },
     adjustments: &[
@@ -153,20 +152,10 @@ pub(super) static STRUCTURE: Structure = Structure {
     velocity_of_approach: "inside the coefficient, through h/p and b/B: the gauged head is used; in an \
                            approach with sloping sides B is area over depth at each head",
     drowned: &[],
-    modular: ModularLimit {
-        words: "free, ventilated nappe: tailwater at least about 0.1 m below the crest",
-        ratio: None,
-        highest: "-0.1",
-        source: ISO_1438,
-        confidence: Confidence::Memory,
-    },
-    head_measured: HeadPosition {
-        words: "4 to 5 times the largest head upstream of the plate",
-        nearest: Some("4*h"),
-        farthest: Some("5*h"),
-        source: ISO_1438,
-        confidence: Confidence::Memory,
-    },
+    modular: thin_plate::FREE_NAPPE,
+    head_measured: thin_plate::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };
 
 const MIN_HEAD: Limit = Limit::at_least("h", "0.03", "head").by(ISO_1438, Confidence::Memory);
@@ -177,20 +166,13 @@ const MIN_HEIGHT: Limit =
 const MAX_RATIO: Limit =
     Limit::at_most("h/p", "2.5", "head over crest height").by(ISO_1438, Confidence::Memory);
 
-const COEFFICIENT: Coefficient = Coefficient::Published(CoefficientRule {
-    words: "at 95 %: 1.5 % for h/p up to 1.0, 2 % up to 1.5, 3 % up to 2.5",
-    percent: "1.5 when h <= p otherwise 2 when h <= 1.5*p otherwise 3",
-    source: ISO_1438,
-    confidence: Confidence::Memory,
-});
-
 #[cfg(test)]
 mod tests {
     use crate::model::Model;
     use crate::model::structures::{CATALOGUE, Installation};
 
     #[test]
-    fn the_derivative_by_head_reads_as_written_by_hand() {
+    fn the_derivative_by_gravity_reads_as_written_by_hand() {
         let form = Installation::plain(CATALOGUE[0]).forms().swap_remove(1);
         let mut model = Model::build(&form.blueprint).unwrap();
         let by_gravity = model.derivative(model.result(), model.input("gravity").unwrap());

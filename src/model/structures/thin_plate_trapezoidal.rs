@@ -14,8 +14,8 @@ pub(super) static STRUCTURE: Structure = Structure {
     title: "Trapezoidal thin-plate weir, side slopes 1:4",
     standard: USBR_MANUAL,
     inputs: &[
-        InputSpec::length("crest_width", "b", "width of the crest (bottom)", "0.60 m"),
-        InputSpec { example: "2.00 m", ..APPROACH_WIDTH },
+        InputSpec::length("crest_width", "b", "width of the crest (bottom)", "1.00 m"),
+        InputSpec { example: "2.50 m", ..APPROACH_WIDTH },
         InputSpec::length("crest_height", "p", "height of the crest above the bed", "0.60 m"),
         APPROACH_SIDE_SLOPE,
     ],
@@ -83,4 +83,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: BOS,
         confidence: Confidence::Memory,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };

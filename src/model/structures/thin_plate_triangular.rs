@@ -1,10 +1,10 @@
 //! Triangular thin-plate notch, Kindsvater-Shen equation, 20 to 100 degrees.
 
 use super::approach::{APPROACH_SIDE_SLOPE, APPROACH_WIDTH, MEAN_WIDTH};
-use super::input::{HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
+use super::thin_plate::{self, HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
 use super::{
-    Coefficient, CoefficientRule, Constant, HeadPosition, Implicit, InputSpec, ModularLimit,
-    PublishedTable, Regime, Structure, Values,
+    Coefficient, CoefficientRule, Constant, Implicit, InputSpec, ModularLimit, PublishedTable,
+    Regime, Structure, Values,
 };
 use crate::model::source::{ISO_1438, NBS_421, USBR_MANUAL};
 use crate::model::{Confidence, Limit};
@@ -170,21 +170,16 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: USBR_MANUAL,
         confidence: Confidence::Seen,
     },
-    head_measured: HeadPosition {
-        words: "4 to 5 times the largest head upstream of the plate",
-        nearest: Some("4*h"),
-        farthest: Some("5*h"),
-        source: ISO_1438,
-        confidence: Confidence::Memory,
-    },
+    head_measured: thin_plate::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: None,
 };
 
 /// Contraction is a matter of the installation and of the head that the gauge shows: it is decided once,
 /// and no trial changes it.
 fn regime_for(values: &Values) -> usize {
-    let [h, p, bed] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
-    let width = bed + values.given("approach_side_slope").unwrap_or(0.0) * (h + p);
-    let at_most = |value: f64, bound: f64| value <= bound * (1.0 + ROUNDING);
+    let [h, p] = ["head", "crest_height"].map(|key| values.value(key));
+    let width = approach_width(values);
     let full =
         at_most(h / p, 0.4) && at_most(h / width, 0.2) && at_most(0.45, p) && at_most(0.90, width);
     usize::from(!full && is_right(values))
@@ -192,8 +187,19 @@ fn regime_for(values: &Values) -> usize {
 
 /// Where contraction becomes full, or partial, for an installation in which it can.
 fn borders(values: &Values) -> &'static [&'static str] {
-    let high = values.value("crest_height") * (1.0 + ROUNDING) >= 0.45;
-    if is_right(values) && high { &["h/p - 0.4", "h/B_m - 0.2"] } else { &[] }
+    let roomy =
+        at_most(0.45, values.value("crest_height")) && at_most(0.90, approach_width(values));
+    if is_right(values) && roomy { &["h/p - 0.4", "h/B_m - 0.2"] } else { &[] }
+}
+
+/// The mean width of the approach: area over depth.
+fn approach_width(values: &Values) -> f64 {
+    let [h, p, bed] = ["head", "crest_height", "approach_width"].map(|key| values.value(key));
+    bed + values.given("approach_side_slope").unwrap_or(0.0) * (h + p)
+}
+
+fn at_most(value: f64, bound: f64) -> bool {
+    value <= bound * (1.0 + ROUNDING)
 }
 
 fn is_right(values: &Values) -> bool {

@@ -61,7 +61,3 @@ pub(super) const HEAD_MEASURED: HeadPosition = HeadPosition {
     source: ISO_4359,
     confidence: Confidence::Memory,
 };
-
-/// How the velocity of approach enters.
-pub(super) const VELOCITY_OF_APPROACH: &str =
-    "through the total head H = h + alpha v^2/(2 g), solved together with the discharge";

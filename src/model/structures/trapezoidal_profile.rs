@@ -1,11 +1,12 @@
 //! Trapezoidal-profile (embankment) weir with both faces at 1:2.
 
 use super::approach::{
-    APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT, froude_at_most,
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, RECTANGULAR_CONTROL, THROUGH_TOTAL_HEAD, TOTAL_HEAD,
+    VELOCITY_COEFFICIENT, WHILE_MODULAR, froude_at_most,
 };
 use super::{
-    Coefficient, CriticalFlow, HeadPosition, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT,
-    ModularLimit, Regime, Structure,
+    Coefficient, HeadPosition, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit,
+    Regime, Structure,
 };
 use crate::model::Confidence;
 use crate::model::source::{FRITZ_HAGER, ISO_4362, PRACTICE};
@@ -49,7 +50,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "slopes 1:2",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             RECTANGULAR,
             TOTAL_HEAD,
@@ -65,9 +66,10 @@ pub(super) static STRUCTURE: Structure = Structure {
         beyond: None,
         borders: |_| &[],
         limits: &[froude_at_most("0.6").by(PRACTICE, Confidence::Doubtful)],
-        coefficient: Coefficient::FromUser(
-            "no uncertainty of this coefficient is known here: state one (4 % at 95 % would be prudent)",
-        ),
+        coefficient: Coefficient::FromUser {
+            inputs: &["coefficient_factor"],
+            why: "no uncertainty of this coefficient is known here: state one (4 % at 95 % would be prudent)",
+        },
     }],
     regime_for: |_| 0,
     adjustments: &[],
@@ -79,14 +81,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: PRACTICE,
         confidence: Confidence::Doubtful,
     },
-    critical: Some(CriticalFlow {
-        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
-        sill: "p",
-        width: Some("b"),
-        approach: ("B", None),
-    }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the \
-                           discharge",
+    critical: Some(RECTANGULAR_CONTROL),
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "at least 3 times the largest total head upstream of the toe",
         nearest: Some("2*p + 3*H"),
@@ -94,4 +90,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: PRACTICE,
         confidence: Confidence::Doubtful,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };

@@ -1,17 +1,14 @@
 //! Long-throated flume with a trapezoidal throat: exact critical flow in the throat, total head.
 
 use super::approach::{
-    FROUDE_TRAPEZOIDAL, TOP_WIDTH, TOTAL_HEAD, TRAPEZOIDAL, VELOCITY_COEFFICIENT,
+    APPROACH_SIDE_SLOPE, FROUDE_TRAPEZOIDAL, THROUGH_TOTAL_HEAD, TOP_WIDTH, TOTAL_HEAD,
+    TRAPEZOIDAL, VELOCITY_COEFFICIENT, WHILE_MODULAR,
 };
 use super::{
     CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Structure, throat,
 };
 use crate::model::source::ISO_4359;
 use crate::model::{Confidence, Limit};
-
-const SLOPES: [f64; 2] = [0.0, 20.0];
-const SLOPE_REASON: &str =
-    "it is horizontal per vertical: 0 is a vertical wall, 20 a very flat bank";
 
 pub(super) static STRUCTURE: Structure = Structure {
     kind: "trapezoidal-throated-flume",
@@ -23,8 +20,8 @@ pub(super) static STRUCTURE: Structure = Structure {
             "side_slope",
             "m",
             "side slope of the throat, horizontal per vertical",
-            SLOPES,
-            SLOPE_REASON,
+            APPROACH_SIDE_SLOPE.domain,
+            APPROACH_SIDE_SLOPE.domain_reason,
             "1",
         ),
         InputSpec::length("throat_length", "L", "length of the throat along the flow", "1.20 m"),
@@ -40,14 +37,12 @@ pub(super) static STRUCTURE: Structure = Structure {
             "width of the approach channel at its bed",
             "0.60 m",
         ),
-        InputSpec::number(
-            "approach_side_slope",
-            "m_a",
-            "side slope of the approach channel, horizontal per vertical",
-            SLOPES,
-            SLOPE_REASON,
-            "1",
-        ),
+        InputSpec {
+            meaning: "side slope of the approach channel, horizontal per vertical",
+            default: None,
+            example: "1",
+            ..APPROACH_SIDE_SLOPE
+        },
         KINETIC_ENERGY_COEFFICIENT,
     ],
     choice: None,
@@ -55,7 +50,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             throat::BED_LOSS,
             ("C_D", "(1 - 2*x_delta*(sqrt(1 + m^2) - m)*L/b)*C_h"),
@@ -99,6 +94,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         width: None,
         approach: ("B", Some("m_a")),
     }),
-    velocity_of_approach: throat::VELOCITY_OF_APPROACH,
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: throat::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: Some("throat_bottom_width"),
 };

@@ -2,12 +2,12 @@
 //! or by a crest tapping.
 
 use super::approach::{
-    APPROACH_WIDTH, FROUDE, RECTANGULAR, TOTAL_HEAD, VELOCITY_COEFFICIENT, froude_at_most,
+    APPROACH_WIDTH, FROUDE, RECTANGULAR, RECTANGULAR_CONTROL, THROUGH_TOTAL_HEAD, TOTAL_HEAD,
+    VELOCITY_COEFFICIENT, froude_at_most,
 };
 use super::{
-    Coefficient, CoefficientRule, Constant, CriticalFlow, DrownedFlow, HeadPosition, Implicit,
-    InputSpec, KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, Regime, SecondHeadAt,
-    Structure,
+    Coefficient, CoefficientRule, Constant, DrownedFlow, HeadPosition, Implicit, InputSpec,
+    KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, Regime, SecondHeadAt, Structure,
 };
 use crate::model::source::{ISO_4360, ISO_4360_2008};
 use crate::model::{Confidence, Limit};
@@ -83,21 +83,19 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "tailwater",
             when: "the second head is that of the tailwater, whose velocity head is left out",
             definitions: &[
-                // The curve ends at 0.985: its last value is held.
-                ("S", "min(max(h_2/H, 0), 0.985)"),
+                ("S", "max(h_2, 0)/H"),
                 ("f_low", "1.035*(0.817 - S^4)^0.0647"),
                 ("f_high", "8.686 - 8.403*S"),
-                ("f_published", "f_low when S <= 0.93 otherwise f_high"),
-                ("f", "F_f*f_published when f_published < 1 otherwise 1"),
+                // Beyond 0.985 nothing is published: the root of a negative number has no value.
+                (
+                    "f_published",
+                    "f_low when S <= 0.93 otherwise f_high when S <= 0.985 otherwise sqrt(0.985 - S)",
+                ),
+                ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
             ],
             needs: &[],
-            beyond: Some("h_2/H - 0.985"),
-            limits: &[Limit::at_most(
-                "h_2/H",
-                "0.985",
-                "tailwater head over total head, end of the curve",
-            )
-            .by(ISO_4360, Confidence::MemoryConfirmed)],
+            beyond: None,
+            limits: &[],
             reads: SecondHeadAt::Tailwater,
             ratio: ModularRatio::OfStructure,
             uncertainty: None,
@@ -108,9 +106,9 @@ pub(super) static STRUCTURE: Structure = Structure {
             name: "crest tapping",
             when: "the second head is that at the tapping, 20 mm downstream of the crest line",
             definitions: &[
-                ("S", "max(h_2/H, 0)"),
+                ("S", "max(h_2, 0)/H"),
                 ("f_published", "1.04*(0.945 - S^1.5)^0.256"),
-                ("f", "F_f*f_published when f_published < 1 otherwise 1"),
+                ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
             ],
             needs: &[],
             beyond: None,
@@ -129,13 +127,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_4360_2008,
         confidence: Confidence::Seen,
     },
-    critical: Some(CriticalFlow {
-        energy: "1.5*(alpha*(Q/b)^2/g)^(1/3)",
-        sill: "p",
-        width: Some("b"),
-        approach: ("B", None),
-    }),
-    velocity_of_approach: "through the total head H = h + alpha v^2/(2 g), solved together with the discharge",
+    critical: Some(RECTANGULAR_CONTROL),
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: HeadPosition {
         words: "6 times the crest height upstream of the crest line, or 2 times the largest total head \
                 from the toe of the weir, whichever the edition gives",
@@ -144,4 +137,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: ISO_4360,
         confidence: Confidence::Doubtful,
     },
+    head_in_approach: true,
+    control_width: Some("crest_width"),
 };

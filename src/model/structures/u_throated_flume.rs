@@ -1,8 +1,8 @@
 //! Long-throated flume with a U-shaped throat: exact critical flow, the critical depth an unknown.
 
 use super::approach::{
-    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, TOP_WIDTH, TOTAL_HEAD, TRAPEZOIDAL,
-    VELOCITY_COEFFICIENT,
+    APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, THROUGH_TOTAL_HEAD, TOP_WIDTH,
+    TOTAL_HEAD, TRAPEZOIDAL, VELOCITY_COEFFICIENT, WHILE_MODULAR,
 };
 use super::{
     CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Solved, Structure,
@@ -38,7 +38,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     tables: &[],
     regimes: &[Regime {
         name: "free",
-        when: "always: the equation holds while the flow is modular",
+        when: WHILE_MODULAR,
         definitions: &[
             throat::BED_LOSS,
             ("C_D", "(1 - 2*x_delta*L/D)*C_h"),
@@ -88,6 +88,8 @@ pub(super) static STRUCTURE: Structure = Structure {
         width: None,
         approach: ("B", Some("m_a")),
     }),
-    velocity_of_approach: throat::VELOCITY_OF_APPROACH,
+    velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: throat::HEAD_MEASURED,
+    head_in_approach: true,
+    control_width: Some("throat_diameter"),
 };

@@ -282,7 +282,7 @@ def drowned_factor(x, published, branch="drowned"):
         took("modular")
         return mpf(1)
     took(branch)
-    return x["drowned_flow_factor"] * published
+    return min(mpf(1), x["drowned_flow_factor"] * published)
 
 
 def root_of_cube(value):

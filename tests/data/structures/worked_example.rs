@@ -62,4 +62,6 @@ pub(super) static STRUCTURE: Structure = Structure {
         source: PRACTICE,
         confidence: Confidence::Memory,
     },
+    head_in_approach: false,
+    control_width: None,
 };
