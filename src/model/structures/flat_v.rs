@@ -3,6 +3,7 @@
 use super::approach::{
     APPROACH_WIDTH, FROUDE, RECTANGULAR, THROUGH_TOTAL_HEAD, TOTAL_HEAD, froude_at_most,
 };
+use super::drowned::DROWNED_FACTOR;
 use super::{
     Coefficient, CoefficientRule, CriticalFlow, DrownedFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, PublishedTable, Regime, SecondHeadAt,
@@ -116,7 +117,7 @@ pub(super) static STRUCTURE: Structure = Structure {
         definitions: &[
             ("S", "max(h_2 - k_h, 0)/h_e"),
             ("f_published", "1.078*(0.909 - S^1.5)^0.183"),
-            ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
+            DROWNED_FACTOR,
         ],
         needs: &[],
         beyond: None,

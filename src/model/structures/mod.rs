@@ -7,6 +7,7 @@
 mod approach;
 mod automatic;
 mod composition;
+mod drowned;
 mod form;
 mod input;
 mod installation;

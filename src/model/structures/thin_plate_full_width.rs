@@ -1,6 +1,7 @@
 //! Thin-plate weir over the full width of the channel, Rehbock form; drowned flow by two published
 //! factors.
 
+use super::drowned::DROWNED_FACTOR;
 use super::thin_plate::{self, HEAD_ADJUSTMENT, PUBLISHED_HEAD_ADJUSTMENT};
 use super::{
     CoefficientRule, Constant, DrownedFlow, Implicit, InputSpec, ModularRatio, Regime,
@@ -81,13 +82,19 @@ pub(super) static STRUCTURE: Structure = Structure {
     drowned: &[
         drowned(
             "ISO 1438",
-            &[RATIO, ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_ISO"), FACTOR],
+            &[RATIO, ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_ISO"), DROWNED_FACTOR],
             "0 when f_published >= 1 otherwise 200/sqrt(3)*abs(f_Villemonte/f_ISO - 1)",
             (ISO_1438, Confidence::MemoryConfirmed),
         ),
         drowned(
             "Villemonte",
-            &[RATIO, ISO_FACTOR, VILLEMONTE_FACTOR, ("f_published", "f_Villemonte"), FACTOR],
+            &[
+                RATIO,
+                ISO_FACTOR,
+                VILLEMONTE_FACTOR,
+                ("f_published", "f_Villemonte"),
+                DROWNED_FACTOR,
+            ],
             "0 when f_published >= 1 otherwise 200/sqrt(3)*abs(f_ISO/f_Villemonte - 1)",
             (VILLEMONTE, Confidence::Memory),
         ),
@@ -104,8 +111,6 @@ pub(super) static STRUCTURE: Structure = Structure {
 const RATIO: (&str, &str) = ("S", "max(h_2, 0)/h");
 const ISO_FACTOR: (&str, &str) = ("f_ISO", "1.007*(0.975 - S^1.45)^0.265");
 const VILLEMONTE_FACTOR: (&str, &str) = ("f_Villemonte", "(1 - S^1.5)^0.385");
-/// No factor is above 1.
-const FACTOR: (&str, &str) = ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)");
 
 /// One of the two factors; that they differ, by 4 % at a ratio of heads of 0.5 and 13 % at 0.8, is the uncertainty of
 /// each.

@@ -5,6 +5,7 @@ use super::approach::{
     APPROACH_WIDTH, FROUDE, RECTANGULAR, RECTANGULAR_CONTROL, THROUGH_TOTAL_HEAD, TOTAL_HEAD,
     VELOCITY_COEFFICIENT, froude_at_most,
 };
+use super::drowned::DROWNED_FACTOR;
 use super::{
     Coefficient, CoefficientRule, Constant, DrownedFlow, HeadPosition, Implicit, InputSpec,
     KINETIC_ENERGY_COEFFICIENT, ModularLimit, ModularRatio, Regime, SecondHeadAt, Structure,
@@ -91,7 +92,7 @@ pub(super) static STRUCTURE: Structure = Structure {
                     "f_published",
                     "f_low when S <= 0.93 otherwise f_high when S <= 0.985 otherwise sqrt(0.985 - S)",
                 ),
-                ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
+                DROWNED_FACTOR,
             ],
             needs: &[],
             beyond: None,
@@ -108,7 +109,7 @@ pub(super) static STRUCTURE: Structure = Structure {
             definitions: &[
                 ("S", "max(h_2, 0)/H"),
                 ("f_published", "1.04*(0.945 - S^1.5)^0.256"),
-                ("f", "1 when f_published >= 1 otherwise min(1, F_f*f_published)"),
+                DROWNED_FACTOR,
             ],
             needs: &[],
             beyond: None,

@@ -282,6 +282,17 @@ def drowned_factor(x, published, branch="drowned"):
         took("modular")
         return mpf(1)
     took(branch)
+    # The input moves the factor by no more than the reduction itself.
+    moved = x["drowned_flow_factor"] - 1
+    return published * (1 + max(min(moved, 1 - published), published - 1))
+
+
+def drowned_rating(x, published, branch="drowned"):
+    """Of a Parshall flume, whose published factor jumps where it begins: not above 1."""
+    if published is None:
+        took("modular")
+        return mpf(1)
+    took(branch)
     return min(mpf(1), x["drowned_flow_factor"] * published)
 
 
@@ -532,7 +543,7 @@ def parshall_flume(x, total, tail, spec):
         if not at_most(s, limit):
             below = c1 * ((h - tail) / FOOT) ** n1 / (-(mp.log(s, 10) + c2)) ** n2
             published = below * FOOT**3 / free
-    return drowned_factor(x, published) * q
+    return drowned_rating(x, published) * q
 
 
 def end_depth(x, total, tail, spec):
