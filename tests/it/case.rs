@@ -1,7 +1,9 @@
 //! A structure with its inputs, to evaluate an expression of it: what the tests of values share.
 
 use nappe::model::Model;
-use nappe::model::structures::{Installation, SecondHead, Values, find};
+use nappe::model::structures::{
+    Form, Installation, InstalledLimit, LimitKind, SecondHead, Values, find,
+};
 
 /// What a station has: its structure, the size of it, its drowned-flow equation, its inputs.
 pub(crate) struct Case {
@@ -34,6 +36,22 @@ impl Case {
 
     /// The value of an expression; inputs that are not given have their defaults, or 1.
     pub(crate) fn value(&self, text: &str) -> f64 {
+        let (form, inputs) = self.form();
+        let mut model = Model::build(&form.blueprint).unwrap();
+        let (id, _) = model.expression(text).unwrap();
+        model.evaluate(&[id], &inputs).0[0]
+    }
+
+    /// The bound of critical flow on a quantity.
+    pub(crate) fn critical_bound(&self, quantity: &str) -> f64 {
+        let (form, _) = self.form();
+        let critical = |limit: &&InstalledLimit| {
+            limit.kind == LimitKind::Critical && limit.quantity == quantity
+        };
+        self.value(&form.limits.iter().find(critical).unwrap().bound)
+    }
+
+    fn form(&self) -> (Form, Vec<f64>) {
         let mut installed = Installation::plain(find(self.kind).unwrap());
         let structure = installed.structure;
         if let Some(word) = self.size {
@@ -58,10 +76,7 @@ impl Case {
         let keys = specs.iter().map(|input| input.key.clone());
         let values = Values::new(keys.zip(all.iter().copied()));
         let form = installed.form(&values);
-        let mut model = Model::build(&form.blueprint).unwrap();
-        let (id, _) = model.expression(text).unwrap();
-        let inputs: Vec<f64> = all.into_iter().map(|value| value.unwrap_or(1.0)).collect();
-        model.evaluate(&[id], &inputs).0[0]
+        (form, all.into_iter().map(|value| value.unwrap_or(1.0)).collect())
     }
 }
 

@@ -28,7 +28,7 @@ const CRATES: [(&str, &[&str]); 14] = [
     ("rand_distr::", &["src/propagation/monte_carlo/"]),
     ("statrs::", &["src/propagation/coverage.rs"]),
     ("sha2::", &["src/station/file.rs"]),
-    ("schemars::", &["src/report/", "src/study/limits.rs"]),
+    ("schemars::", &["src/report/"]),
     ("rayon::", &["src/propagation/", "src/cli/budget.rs"]),
 ];
 
