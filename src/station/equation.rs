@@ -26,6 +26,8 @@ pub struct Equation {
 
 /// More names than any equation needs; work grows with their square.
 const MOST_NAMES: usize = 300;
+/// Characters of all definitions together: each may become an operation on a block of trials.
+const MOST_TEXT: usize = 50_000;
 
 /// Where the texts of the equations stand in the file.
 #[derive(Default)]
@@ -82,6 +84,12 @@ pub(super) fn read(
     }
     if blueprint.definitions.len() + blueprint.inputs.len() > MOST_NAMES {
         let title = format!("an equation has at most {MOST_NAMES} definitions and inputs together");
+        findings.error(Code::OutsideDomain, places.result, title);
+        return None;
+    }
+    let length: usize = blueprint.definitions.iter().map(|(_, text)| text.len()).sum();
+    if length > MOST_TEXT {
+        let title = format!("the definitions have {length} characters; {MOST_TEXT} are read");
         findings.error(Code::OutsideDomain, places.result, title);
         return None;
     }
