@@ -10,6 +10,9 @@ pub fn sheet_document(sheet: &Sheet) -> Document {
     let mut page = Document::default();
     page.title(format!("{}: {}", sheet.kind, sheet.title));
     page.paragraph(sheet.standard.clone());
+    if let Some(example) = &sheet.example {
+        page.paragraph(example.clone());
+    }
     page.heading("Inputs");
     page.table(
         &["key", "symbol", "SI unit", "meaning"],

@@ -82,14 +82,7 @@ pub(super) fn read(
     if findings.list.len() > before {
         return None;
     }
-    if blueprint.definitions.len() + blueprint.inputs.len() > MOST_NAMES {
-        let title = format!("an equation has at most {MOST_NAMES} definitions and inputs together");
-        findings.error(Code::OutsideDomain, places.result, title);
-        return None;
-    }
-    let length: usize = blueprint.definitions.iter().map(|(_, text)| text.len()).sum();
-    if length > MOST_TEXT {
-        let title = format!("the definitions have {length} characters; {MOST_TEXT} are read");
+    if let Some(title) = too_large(&blueprint) {
         findings.error(Code::OutsideDomain, places.result, title);
         return None;
     }
@@ -221,6 +214,18 @@ fn read_definitions(
         }
     }
     definitions
+}
+
+/// Why an equation has more names or text than its answer would be waited for.
+fn too_large(blueprint: &Blueprint) -> Option<String> {
+    if blueprint.definitions.len() + blueprint.inputs.len() > MOST_NAMES {
+        return Some(format!(
+            "an equation has at most {MOST_NAMES} definitions and inputs together"
+        ));
+    }
+    let length: usize = blueprint.definitions.iter().map(|(_, text)| text.len()).sum();
+    (length > MOST_TEXT)
+        .then(|| format!("the definitions have {length} characters; {MOST_TEXT} are read"))
 }
 
 fn read_unknown(

@@ -2,7 +2,9 @@
 
 use serde::Serialize;
 
-use crate::model::structures::{Choice, Form, Installation, InstalledInput, SecondHead, Structure};
+use crate::model::structures::{
+    CATALOGUE, Choice, Form, Installation, InstalledInput, SecondHead, Structure,
+};
 use crate::model::{Blueprint, Confidence, Input, Model};
 use crate::units::{Dimension, significant, with_unit};
 
@@ -15,6 +17,8 @@ pub struct Sheet {
     pub title: String,
     /// Number and title of its standard.
     pub standard: String,
+    /// What the sheet is an example of; `None` where it is the whole.
+    pub example: Option<String>,
     /// Its inputs: key, symbol, SI unit, meaning.
     pub inputs: Vec<[String; 4]>,
     /// The forms of its equation.
@@ -123,6 +127,7 @@ pub fn sheet(structure: &'static Structure) -> Sheet {
         kind: structure.kind.to_owned(),
         title: structure.title.to_owned(),
         standard: format!("{}, {}", structure.standard.document, structure.standard.title),
+        example: example(&installation),
         inputs: inputs(&installation),
         regimes: regimes.map(|(model, form)| regime_sheet(&form, model)).collect(),
         drowned: drowned(&installation),
@@ -136,6 +141,17 @@ pub fn sheet(structure: &'static Structure) -> Sheet {
             .collect(),
         velocity_of_approach: structure.velocity_of_approach.to_owned(),
     }
+}
+
+fn example(installation: &Installation) -> Option<String> {
+    let first = installation.sections.first()?.installation.structure;
+    let kinds = CATALOGUE.iter().filter(|each| each.head_in_approach).map(|each| each.kind);
+    Some(format!(
+        "Shown with {} sections of kind {}. A section can be: {}.",
+        installation.sections.len(),
+        first.kind,
+        kinds.collect::<Vec<_>>().join(", ")
+    ))
 }
 
 fn inputs(installation: &Installation) -> Vec<[String; 4]> {
