@@ -30,6 +30,7 @@ impl From<Refusal> for Failure {
             | Refusal::Equation(_) => Self::BadQuestion(refusal.to_string()),
             Refusal::Dry(_)
             | Refusal::NoSolution(_)
+            | Refusal::NoPublishedSize(_)
             | Refusal::TailwaterAbove { .. }
             | Refusal::FlowJumps { .. }
             | Refusal::NoHeadForFlow { .. } => Self::CannotBeStated(refusal),

@@ -10,7 +10,14 @@ use super::tape::{Operation, Register, Solve, Step};
 #[derive(Clone, Debug)]
 pub(super) enum Draft {
     Plain(DraftKind, Vec<u32>),
-    Solve { lower: u32, upper: u32, body: Vec<(u32, Draft)>, residual: u32, slope: u32 },
+    Solve {
+        lower: u32,
+        upper: u32,
+        body: Vec<(u32, Draft)>,
+        residual: u32,
+        slope: u32,
+        only_rising: bool,
+    },
 }
 
 /// What a plain operation does; operands are apart from it.
@@ -104,7 +111,7 @@ impl Allocation {
                 let at: Vec<Register> = operands.iter().map(|r| self.places[r]).collect();
                 plain_operation(*kind, &at)
             }
-            Draft::Solve { lower, upper, body, residual, slope } => {
+            Draft::Solve { lower, upper, body, residual, slope, only_rising } => {
                 let inside: Vec<Step> = body
                     .iter()
                     .map(|(target, draft)| {
@@ -121,6 +128,7 @@ impl Allocation {
                     body: inside,
                     start: 0.0,
                     rising: 0.0,
+                    only_rising: *only_rising,
                 };
                 for (target, _) in body {
                     self.free.push(self.places[target]);
@@ -135,7 +143,7 @@ impl Allocation {
 fn reads(draft: &Draft) -> Vec<u32> {
     match draft {
         Draft::Plain(_, operands) => operands.clone(),
-        Draft::Solve { lower, upper, body, residual, slope } => {
+        Draft::Solve { lower, upper, body, residual, slope, .. } => {
             let own: Vec<u32> = body.iter().map(|(target, _)| *target).collect();
             body.iter()
                 .flat_map(|(_, draft)| reads(draft))

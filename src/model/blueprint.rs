@@ -54,6 +54,9 @@ pub struct UnknownText {
     pub from: String,
     /// The largest value it can have.
     pub to: String,
+    /// Only a root at which left minus right rises through zero is meant: where the equation has no value
+    /// at the lower bound, another may stand before it.
+    pub rising: bool,
 }
 
 /// Which text of a blueprint a fault is in.

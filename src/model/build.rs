@@ -243,6 +243,7 @@ impl<'a> Builder<'a> {
             slope: zero,
             lower: ids[0],
             upper: ids[1],
+            rising: self.blueprint.unknowns.iter().any(|each| each.name == name && each.rising),
         });
     }
 

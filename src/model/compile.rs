@@ -218,7 +218,10 @@ impl<'m> Compiler<'m> {
         let slope = self.emit(parts.slope);
         let (residual, slope) = (self.in_register(residual), self.in_register(slope));
         let body = self.bodies.pop().map(|body| body.drafts).unwrap_or_default();
-        self.push(register, Draft::Solve { lower, upper, body, residual, slope });
+        self.push(
+            register,
+            Draft::Solve { lower, upper, body, residual, slope, only_rising: parts.rising },
+        );
         Value::Virtual(register)
     }
 

@@ -5,45 +5,106 @@ const CELLS: u32 = 128;
 /// More steps than bisection alone needs to exhaust the digits of a double.
 const STEPS: u32 = 200;
 
-/// The smallest root of `residual` between two bounds, or `None` where there is none.
+/// The smallest root of `residual` between two bounds, or `None` where there is none; with `only_rising` the
+/// smallest at which it rises through zero.
 ///
 /// `residual` gives the value and its slope. The range is searched cell by cell for the first change of
 /// sign, and a cell whose slopes point to a double dip towards zero is looked into, so that a pair of
-/// close roots near the last possible solution is not stepped over. Inside the cell Newton's method
-/// runs, held to a bracket that shrinks at every step, so that it cannot leave or cycle.
+/// close roots near the last possible solution is not stepped over; a cell of which one end has no value
+/// is cut down to where the values begin or end. Inside the cell Newton's method runs, held to a bracket
+/// that shrinks at every step, so that it cannot leave or cycle.
 pub(super) fn smallest_root(
     residual: &mut dyn FnMut(f64) -> (f64, f64),
     lower: f64,
     upper: f64,
+    only_rising: bool,
 ) -> Option<f64> {
     if !(lower.is_finite() && upper.is_finite() && lower <= upper) {
         return None;
     }
-    let (mut left, (mut value, mut slope)) = (lower, residual(lower));
-    if value == 0.0 {
+    let mut left = Place::at(residual, lower);
+    if left.value == 0.0 {
         return Some(lower);
     }
     for cell in 1..=CELLS {
         let share = f64::from(cell) / f64::from(CELLS);
-        let right = if cell == CELLS { upper } else { lower + (upper - lower) * share };
-        let (next, next_slope) = residual(right);
-        let end = if value * next <= 0.0 {
-            Some(right)
-        } else if value * slope < 0.0 && next * next_slope > 0.0 {
-            // The value first runs towards zero and then away from it: there may be two roots inside.
-            turning_point(residual, left, right, value)
-        } else {
-            None
+        let end = if cell == CELLS { upper } else { lower + (upper - lower) * share };
+        let right = Place::at(residual, end);
+        let cut = [left, right].map(|place| place.value.is_nan());
+        let (from, to) = match cut {
+            [false, true] => (left, edge(residual, left, right)),
+            [true, false] => (edge(residual, right, left), right),
+            _ => (left, right),
         };
-        if let Some(end) = end
-            && let Some(root) = bracketed_newton(residual, left, end, value)
-            && is_root(residual, root, value.abs().max(next.abs()))
-        {
+        if let Some(root) = root_between(residual, from, to, only_rising) {
             return Some(root);
         }
-        (left, value, slope) = (right, next, next_slope);
+        left = right;
     }
     None
+}
+
+/// A point with its residual and slope.
+#[derive(Clone, Copy, Debug)]
+struct Place {
+    x: f64,
+    value: f64,
+    slope: f64,
+}
+
+impl Place {
+    fn at(residual: &mut dyn FnMut(f64) -> (f64, f64), x: f64) -> Self {
+        let (value, slope) = residual(x);
+        Self { x, value, slope }
+    }
+}
+
+/// The last point with a value, from one that has one towards one that has none.
+fn edge(residual: &mut dyn FnMut(f64) -> (f64, f64), defined: Place, undefined: Place) -> Place {
+    let (mut inside, mut outside) = (defined, undefined.x);
+    for _ in 0..STEPS {
+        let middle = inside.x + (outside - inside.x) / 2.0;
+        if middle == inside.x || middle == outside {
+            break;
+        }
+        let found = Place::at(residual, middle);
+        if found.value.is_nan() {
+            outside = middle;
+        } else {
+            inside = found;
+        }
+    }
+    inside
+}
+
+/// The first root between two points with values.
+fn root_between(
+    residual: &mut dyn FnMut(f64) -> (f64, f64),
+    left: Place,
+    right: Place,
+    only_rising: bool,
+) -> Option<f64> {
+    let around = left.value.abs().max(right.value.abs());
+    let end = if left.value * right.value <= 0.0 {
+        right.x
+    } else if left.value * left.slope < 0.0 && right.value * right.slope > 0.0 {
+        // The value first runs towards zero and then away from it: there may be two roots inside.
+        let turn = turning_point(residual, left.x, right.x, left.value)?;
+        if only_rising && left.value > 0.0 {
+            // The first of the two falls through zero; the second is meant.
+            let turned = residual(turn).0;
+            let root = bracketed_newton(residual, turn, right.x, turned)?;
+            return Some(root).filter(|root| is_root(residual, *root, around));
+        }
+        turn
+    } else {
+        return None;
+    };
+    if only_rising && left.value > 0.0 {
+        return None;
+    }
+    let root = bracketed_newton(residual, left.x, end, left.value)?;
+    Some(root).filter(|root| is_root(residual, *root, around))
 }
 
 /// A change of sign is no root where the residual jumps over zero: it is then far from it on both sides.
@@ -122,30 +183,43 @@ mod tests {
             let slope = (x - 1.5) * (x - 3.0) + (x - 1.0) * (x - 3.0) + (x - 1.0) * (x - 1.5);
             (value, slope)
         };
-        let root = smallest_root(&mut cubic, 0.0, 10.0).unwrap();
+        let root = smallest_root(&mut cubic, 0.0, 10.0, false).unwrap();
         assert!((root - 1.0).abs() < 4e-16);
     }
 
     #[test]
     fn two_roots_inside_one_cell_are_not_stepped_over() {
         let mut close = |x: f64| ((x - 0.5001) * (x - 0.5002), 2.0 * x - 1.0003);
-        let root = smallest_root(&mut close, 0.0, 1.0).unwrap();
+        let root = smallest_root(&mut close, 0.0, 1.0, false).unwrap();
         assert!((root - 0.5001).abs() < 1e-12, "{root}");
     }
 
     #[test]
     fn a_jump_over_zero_is_no_root() {
         let mut step = |x: f64| (if x < 0.3 { -0.1 } else { x }, 1.0);
-        assert_eq!(smallest_root(&mut step, 0.0, 1.0), None);
+        assert_eq!(smallest_root(&mut step, 0.0, 1.0, false), None);
         // A root that comes after the jump is found.
         let mut later = |x: f64| (if x < 0.3 { -0.1 } else { 0.7 - x }, -1.0);
-        assert!((smallest_root(&mut later, 0.0, 1.0).unwrap() - 0.7).abs() < 1e-15);
+        assert!((smallest_root(&mut later, 0.0, 1.0, false).unwrap() - 0.7).abs() < 1e-15);
+    }
+
+    #[test]
+    fn a_root_beside_an_undefined_stretch_is_found() {
+        // No value below 0.301; roots at 0.302 (falling) and 0.305 (rising), all in one cell of 2.
+        let mut half = |x: f64| {
+            let value = if x < 0.301 { f64::NAN } else { (x - 0.302) * (x - 0.305) };
+            (value, 2.0 * x - 0.607)
+        };
+        let first = smallest_root(&mut half, 0.0, 2.0, false).unwrap();
+        assert!((first - 0.302).abs() < 1e-12, "{first}");
+        let rising = smallest_root(&mut half, 0.0, 2.0, true).unwrap();
+        assert!((rising - 0.305).abs() < 1e-12, "{rising}");
     }
 
     #[test]
     fn where_there_is_no_root_none_is_given() {
-        assert_eq!(smallest_root(&mut |x| (x * x + 1.0, 2.0 * x), -3.0, 3.0), None);
-        assert_eq!(smallest_root(&mut |_| (f64::NAN, f64::NAN), 0.0, 1.0), None);
-        assert_eq!(smallest_root(&mut |x| (x, 1.0), 1.0, f64::INFINITY), None);
+        assert_eq!(smallest_root(&mut |x| (x * x + 1.0, 2.0 * x), -3.0, 3.0, false), None);
+        assert_eq!(smallest_root(&mut |_| (f64::NAN, f64::NAN), 0.0, 1.0, false), None);
+        assert_eq!(smallest_root(&mut |x| (x, 1.0), 1.0, f64::INFINITY, false), None);
     }
 }

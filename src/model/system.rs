@@ -39,6 +39,8 @@ pub struct Unknown {
     pub lower: Id,
     /// The largest value it can have.
     pub upper: Id,
+    /// Only a root at which the residual rises through zero is meant.
+    pub rising: bool,
 }
 
 /// A condition on which the equation takes one branch or another.
@@ -60,6 +62,7 @@ pub(super) struct UnknownParts {
     pub(super) slope: Id,
     pub(super) lower: Id,
     pub(super) upper: Id,
+    pub(super) rising: bool,
 }
 
 /// A checked model: one graph for everything that is asked of it.
@@ -325,8 +328,8 @@ impl Model {
     }
 
     pub(super) fn unknown_parts(&mut self, unknown: usize) -> UnknownParts {
-        let Unknown { symbol, residual, slope, lower, upper, .. } = self.unknowns[unknown];
-        UnknownParts { symbol: self.graph.symbol(symbol), residual, slope, lower, upper }
+        let Unknown { symbol, residual, slope, lower, upper, rising, .. } = self.unknowns[unknown];
+        UnknownParts { symbol: self.graph.symbol(symbol), residual, slope, lower, upper, rising }
     }
 
     pub(super) fn graph_dimension(&self, tree: &Tree) -> Result<Option<Dimension>, MismatchError> {

@@ -57,6 +57,8 @@ pub(super) struct Solve {
     /// meant: both from the solution at the nominal values.
     pub(super) start: f64,
     pub(super) rising: f64,
+    /// Only a root at which the residual rises through zero is meant.
+    pub(super) only_rising: bool,
 }
 
 /// The registers of a running tape.
@@ -252,7 +254,7 @@ impl Registers {
             self.run(&solve.body, tables, &(lane..lane + 1), false);
             (self.lanes[solve.residual as usize][lane], self.lanes[solve.slope as usize][lane])
         };
-        smallest_root(&mut residual, lower, upper)
+        smallest_root(&mut residual, lower, upper, solve.only_rising)
     }
 }
 

@@ -251,7 +251,7 @@ fn read_unknown(
         not_a_name(&name, value.span(), findings);
         return None;
     }
-    Some(UnknownText { name, equation: equation?, from: from?, to: to? })
+    Some(UnknownText { name, equation: equation?, from: from?, to: to?, rising: false })
 }
 
 fn read_unit(section: &mut Section<'_, '_>, findings: &mut Findings<'_>) -> Option<Unit> {

@@ -105,6 +105,12 @@ pub enum Refusal {
     /// The equation has no solution here.
     #[error("the equation has no value here: {0}")]
     NoSolution(String),
+    /// The published rule for the size of an automatic source has no value here.
+    #[error(
+        "the published rule for the size of `{0}` has no value here: state an error source of your own with \
+         replaces = \"{0}\""
+    )]
+    NoPublishedSize(String),
     /// The discharge jumps over the flow that is asked about.
     #[error(
         "no head gives a flow of {flow} m3/s: at {head} m it jumps from {below} m3/s to {above} m3/s, as \
@@ -154,7 +160,7 @@ impl Station {
         let shared = match &form {
             Some(form) => {
                 let corrected = corrected(&inputs, &sources);
-                self.published(&mut model, form, &corrected, &mut sources, &mut rows)
+                self.published(&mut model, form, &corrected, &mut sources, &mut rows)?
             }
             None => Vec::new(),
         };
@@ -289,7 +295,7 @@ impl Station {
         corrected: &[f64],
         sources: &mut Vec<Source>,
         rows: &mut Vec<SourceRow>,
-    ) -> Vec<Correlation> {
+    ) -> Result<Vec<Correlation>, Refusal> {
         let replaced = |name: &String| {
             self.sources.iter().any(|source| source.replaces.as_ref() == Some(name))
         };
@@ -298,7 +304,12 @@ impl Station {
             let AutomaticSource { name, acts_on, rule, scales, words, .. } = automatic;
             let Some(input) = model.input(acts_on).filter(|_| !replaced(name)) else { continue };
             let Ok((rule, _)) = model.expression(rule) else { continue };
-            let (values, _) = model.evaluate(&[rule], corrected);
+            let (values, outcome) = model.evaluate(&[rule], corrected);
+            // Where the equation itself has no value, that is said in its own words.
+            let (_, of_result) = model.evaluate(&[model.result()], corrected);
+            if outcome == Outcome::Undefined && of_result != Outcome::Undefined {
+                return Err(Refusal::NoPublishedSize(name.clone()));
+            }
             // Published at 95 %: half of it is the standard uncertainty, and per cent are hundredths.
             let standard_uncertainty = values[0] * if *scales { 0.5 / 100.0 } else { 1.0 };
             let action = if *scales { Action::Scale } else { PLAIN_SHIFT };
@@ -331,7 +342,7 @@ impl Station {
             let same = causes[..index].iter().filter(move |(_, other)| other == cause);
             same.map(|(first, _)| Correlation { sources: [*first, *second], coefficient: 1.0 })
         });
-        pairs.collect()
+        Ok(pairs.collect())
     }
 
     /// Correlations that the file states, and those of sources that share their cause.

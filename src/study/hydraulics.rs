@@ -1,7 +1,7 @@
 //! Whether the flow at the control is modular, and up to what tailwater it would be.
 
 use super::limits::{Asked, LimitState};
-use crate::model::structures::TAILWATER_HEAD;
+use crate::model::structures::{DROWNED_FLOW_FACTOR, TAILWATER_HEAD};
 use crate::station::Setting;
 
 /// What is known of the flow at the control.
@@ -43,8 +43,8 @@ pub(super) fn hydraulics(
     let modular = form.structure.modular;
     let limit =
         format!("{} ({}, {})", modular.words, modular.source.document, modular.confidence.words());
-    let has_equation = !form.structure.drowned.is_empty();
     let model = &mut setting.problem.model;
+    let has_equation = model.input(DROWNED_FLOW_FACTOR.key).is_some();
     let tailwater_known = model.input(TAILWATER_HEAD.key).is_some();
     let mut value = |text: &str| {
         let id = model.expression(text).ok()?.0;

@@ -89,7 +89,8 @@ pub(super) fn limit_values<'v>(
     values: &'v [f64],
 ) -> impl Iterator<Item = (&'v InstalledLimit, Option<[f64; 2]>)> {
     form.limits.iter().zip(values.chunks(3)).map(|(limit, values)| {
-        let stands = limit.applies.is_none() || values[2] > 0.0;
+        // One that cannot be told stands: it is then not kept.
+        let stands = limit.applies.is_none() || !(values[2] <= 0.0);
         (limit, stands.then_some([values[0], values[1]]))
     })
 }

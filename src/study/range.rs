@@ -47,26 +47,19 @@ pub(super) fn failing_heads(station: &Station, moment: Moment) -> Option<Vec<Fai
     let mut sweep = Sweep { station, moment, compiled: Vec::new() };
     let states: Vec<(usize, Vec<bool>)> =
         heads.iter().map(|head| sweep.kept_at(*head)).collect::<Option<_>>()?;
-    let mut found: Vec<FailingLimit> = Vec::new();
-    for form in 0..sweep.compiled.len() {
-        for place in 0..sweep.compiled[form].form.limits.len() {
-            let limit = sweep.compiled[form].form.limits[place].clone();
-            if limit.kind != LimitKind::Use && !tailwater_known {
-                continue;
-            }
-            let fails = |state: &(usize, Vec<bool>)| state.0 == form && !state.1[place];
-            let failing: Vec<bool> = states.iter().map(fails).collect();
-            let intervals = sweep.intervals(&heads, &failing, form, place);
-            match found.iter_mut().find(|known| known.limit == limit) {
-                Some(known) => known.heads.extend(intervals),
-                None => found.push(FailingLimit { limit, heads: intervals }),
-            }
+    let mut limits: Vec<InstalledLimit> = Vec::new();
+    for limit in sweep.compiled.iter().flat_map(|each| &each.form.limits) {
+        let is_asked = limit.kind == LimitKind::Use || tailwater_known;
+        if is_asked && !limits.contains(limit) {
+            limits.push(limit.clone());
         }
     }
-    for each in &mut found {
-        join(&mut each.heads, step);
-    }
-    Some(found)
+    let found = limits.into_iter().map(|limit| {
+        let failing: Vec<bool> = states.iter().map(|state| sweep.fails_in(state, &limit)).collect();
+        let heads = sweep.intervals(&heads, &failing, &limit);
+        FailingLimit { limit, heads }
+    });
+    Some(found.collect())
 }
 
 /// A moment at which the station can be looked at, and whether its tailwater is known there: one that is a
@@ -109,8 +102,14 @@ impl Sweep<'_> {
         Some((index, kept.collect()))
     }
 
-    fn fails(&mut self, head: f64, form: usize, place: usize) -> bool {
-        self.kept_at(head).is_some_and(|(found, kept)| found == form && !kept[place])
+    /// Whether a limit is there and not kept, in the form that holds at a head.
+    fn fails_in(&self, (form, kept): &(usize, Vec<bool>), limit: &InstalledLimit) -> bool {
+        let limits = &self.compiled[*form].form.limits;
+        limits.iter().zip(kept).any(|(each, kept)| each == limit && !kept)
+    }
+
+    fn fails(&mut self, head: f64, limit: &InstalledLimit) -> bool {
+        self.kept_at(head).is_some_and(|state| self.fails_in(&state, limit))
     }
 
     /// Where a limit is not kept, with the ends found by halving the steps in which it changes.
@@ -118,8 +117,7 @@ impl Sweep<'_> {
         &mut self,
         heads: &[f64],
         failing: &[bool],
-        form: usize,
-        place: usize,
+        limit: &InstalledLimit,
     ) -> Vec<[f64; 2]> {
         let mut intervals: Vec<[f64; 2]> = Vec::new();
         for (index, fails) in failing.iter().enumerate() {
@@ -129,12 +127,12 @@ impl Sweep<'_> {
             if index == 0 || !failing[index - 1] {
                 let start = match index {
                     0 => heads[0],
-                    _ => self.border(heads[index], heads[index - 1], form, place),
+                    _ => self.border(heads[index], heads[index - 1], limit),
                 };
                 intervals.push([start, heads[index]]);
             }
             let end = match heads.get(index + 1) {
-                Some(next) if !failing[index + 1] => self.border(heads[index], *next, form, place),
+                Some(next) if !failing[index + 1] => self.border(heads[index], *next, limit),
                 _ => heads[index],
             };
             if let Some(last) = intervals.last_mut() {
@@ -145,10 +143,10 @@ impl Sweep<'_> {
     }
 
     /// The last head at which the limit still fails, between one at which it does and one at which not.
-    fn border(&mut self, mut failing: f64, mut kept: f64, form: usize, place: usize) -> f64 {
+    fn border(&mut self, mut failing: f64, mut kept: f64, limit: &InstalledLimit) -> f64 {
         for _ in 0..HALVINGS {
             let middle = f64::midpoint(failing, kept);
-            if self.fails(middle, form, place) {
+            if self.fails(middle, limit) {
                 failing = middle;
             } else {
                 kept = middle;
@@ -165,19 +163,4 @@ fn compile(form: Form, regimes: Vec<usize>, inputs: &[f64]) -> Option<Compiled> 
     let program = Program::compile(&mut model, &outputs, &free, inputs);
     let workspace = program.workspace();
     Some(Compiled { form, regimes, program, workspace })
-}
-
-/// Joins intervals of neighbouring forms that meet.
-fn join(intervals: &mut Vec<[f64; 2]>, step: f64) {
-    intervals.sort_by(|a, b| a[0].total_cmp(&b[0]));
-    let mut joined: Vec<[f64; 2]> = Vec::new();
-    for interval in intervals.drain(..) {
-        match joined.last_mut() {
-            Some(last) if interval[0] - last[1] <= 1e-5 * step => {
-                last[1] = last[1].max(interval[1]);
-            }
-            _ => joined.push(interval),
-        }
-    }
-    *intervals = joined;
 }

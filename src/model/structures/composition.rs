@@ -185,6 +185,7 @@ pub(super) fn form(installation: &Installation, values: &Values) -> Form {
         equation: format!("Q = {}", sum.join(" + ")),
         from: "0".to_owned(),
         to: LARGEST_FLOW.to_owned(),
+        rising: true,
     };
     // The discharge comes first: what the sections solve for follows it.
     result.blueprint.unknowns.insert(0, discharge);
@@ -273,6 +274,7 @@ fn add_section(
             equation: of_wet(solved.equation),
             from: of_wet(solved.from),
             to: of_wet(solved.to),
+            rising: false,
         });
         let least = (LEAST_HEAD.to_owned(), 1e-3, Dimension::LENGTH);
         if !to.blueprint.constants.contains(&least) {

@@ -155,12 +155,13 @@ fn solve(regime: &Regime, through_tailwater: bool, blueprint: &mut Blueprint) {
             equation: format!("Q = {}", regime.discharge),
             from: "0".to_owned(),
             to,
+            rising: true,
         }),
         None => blueprint.definitions.push(("Q".to_owned(), regime.discharge.to_owned())),
     }
     if let Some(Solved { name, equation, from, to }) = regime.solved {
         let [name, equation, from, to] = [name, equation, from, to].map(str::to_owned);
-        blueprint.unknowns.push(UnknownText { name, equation, from, to });
+        blueprint.unknowns.push(UnknownText { name, equation, from, to, rising: false });
     }
 }
 

@@ -126,7 +126,11 @@ pub(super) static STRUCTURE: Structure = Structure {
                     "Q_drowned",
                     "m3_per_s*(foot/metre)^3*C_1*((h - h_2)/foot)^n_1/(-(ln(S)/ln(10) + C_2))^n_2",
                 ),
-                ("f_published", "Q_drowned/(C*m3_per_s*(h/metre)^n)"),
+                // Towards 0.97 the curve turns up again, to a pole at 0.99: no value beyond 0.95.
+                (
+                    "f_published",
+                    "Q_drowned/(C*m3_per_s*(h/metre)^n) when S <= 0.95 otherwise sqrt(0.95 - S)",
+                ),
                 ("f", "1 when S <= M_L otherwise min(1, F_f*f_published)"),
             ],
             needs: &["C_1"],
