@@ -140,6 +140,72 @@ impl Distribution {
         }
     }
 
+    /// Third central moment and excess of the fourth over that of a normal distribution, μ₃/u³ and μ₄/u⁴ - 3, with
+    /// u the standard uncertainty; 0 for a t distribution, which the linear method takes as normal.
+    ///
+    /// ```
+    /// use nappe::propagation::Distribution;
+    ///
+    /// let limits = Distribution::Rectangular { mean: 5.0, half_width: 3.0 };
+    /// let [third, excess] = limits.shape_moments();
+    /// assert!(third == 0.0 && (excess - (9.0 / 5.0 - 3.0)).abs() < 1e-12);
+    /// ```
+    pub fn shape_moments(&self) -> [f64; 2] {
+        let [second, third, fourth] = self.central_moments();
+        if second > 0.0 {
+            [third / second.powf(1.5), fourth / second.powi(2) - 3.0]
+        } else {
+            [0.0, 0.0]
+        }
+    }
+
+    /// Second, third and fourth central moments.
+    fn central_moments(&self) -> [f64; 3] {
+        let second = self.standard_uncertainty().powi(2);
+        // The fourth moment of symmetrical shapes, over u⁴.
+        let symmetrical = |kurtosis: f64| [second, 0.0, kurtosis * second.powi(2)];
+        match self {
+            Self::Fixed { .. } => [0.0; 3],
+            Self::Normal { .. } | Self::ScaledT { .. } => symmetrical(3.0),
+            Self::Rectangular { .. } => symmetrical(9.0 / 5.0),
+            Self::Triangular { .. } => symmetrical(12.0 / 5.0),
+            Self::Arcsine { .. } => symmetrical(3.0 / 2.0),
+            Self::Trapezoidal { half_width, flat_half_width, .. } => {
+                // The sum of two rectangulars, of variances v and w: 3 - 6/5 (v² + w²)/(v + w)².
+                let v = (half_width + flat_half_width).powi(2);
+                let w = (half_width - flat_half_width).powi(2);
+                let sum = (v + w).powi(2);
+                let share = if sum > 0.0 { (v * v + w * w) / sum } else { 0.0 };
+                symmetrical(3.0 - 1.2 * share)
+            }
+            Self::CurvilinearTrapezoid { half_width, limit_half_width, .. } => {
+                // A rectangular whose half-width w + d r has the fourth power w⁴ + 2 w² d² + d⁴/5 on average.
+                let (w, d) = (half_width, limit_half_width);
+                [second, 0.0, (w.powi(4) + 2.0 * w.powi(2) * d.powi(2) + d.powi(4) / 5.0) / 5.0]
+            }
+            Self::Discrete { values, probabilities } => {
+                let mean = self.mean();
+                [2, 3, 4].map(|power| {
+                    let term = |(value, p): (&f64, &f64)| (value - mean).powi(power) * p;
+                    values.iter().zip(probabilities).map(term).sum()
+                })
+            }
+            Self::Occasional { present, distribution } => {
+                let mean = self.mean();
+                let away = distribution.mean() - mean;
+                let [second, third, fourth] = distribution.central_moments();
+                let while_there = [
+                    second + away.powi(2),
+                    third + 3.0 * away * second + away.powi(3),
+                    fourth + 4.0 * away * third + 6.0 * away.powi(2) * second + away.powi(4),
+                ];
+                let absent = [mean.powi(2), -mean.powi(3), mean.powi(4)];
+                let part = |i: usize| present * while_there[i] + (1.0 - present) * absent[i];
+                [part(0), part(1), part(2)]
+            }
+        }
+    }
+
     /// It is normal or a t: what a joint normal distribution can stand for.
     pub fn is_normal(&self) -> bool {
         matches!(self, Self::Normal { .. })

@@ -11,6 +11,7 @@ mod distribution;
 mod linear;
 pub mod monte_carlo;
 mod problem;
+mod second_order;
 mod shares;
 
 pub use agreement::{Agreement, numerical_tolerance};
@@ -19,4 +20,5 @@ pub use coverage::Coverage;
 pub use distribution::Distribution;
 pub use linear::{Contribution, DegreesOfFreedom, Linear, linear};
 pub use problem::{Action, Effect, Problem, Source, corrected};
+pub use second_order::{SecondOrder, second_order};
 pub use shares::{Share, Shares, shares};

@@ -1,22 +1,23 @@
 //! The budget: what each error source contributes to the uncertainty of one discharge, by both methods.
 
 use crate::diagnostic::{Code, Warning};
-use crate::model::Outcome;
 use crate::model::expression::Table;
 use crate::model::structures::{Form, TAILWATER_HEAD};
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
-use crate::propagation::{Agreement, Coverage, Linear, Share, linear, shares};
+use crate::propagation::{Agreement, Coverage, Linear, SecondOrder, Share, second_order, shares};
 use crate::station::{
     Evidence, Kind, Moment, Refusal, Setting, Station, Tailwater, unstated_warning,
 };
 use crate::units::{Unit, significant};
 
+use super::answer::{Answer, answer};
 use super::at::{At, find_moment};
 use super::hydraulics::{FlowState, Hydraulics, hydraulics};
 use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
 use super::range::{failing_heads, note_failing_heads};
 use super::warnings::{
-    branch_warnings, freedom_warning, memory_warning, table_warnings, trial_warnings,
+    branch_warnings, curvature_warning, freedom_warning, memory_warning, table_warnings,
+    trial_warnings,
 };
 
 /// What is asked.
@@ -71,6 +72,8 @@ pub struct Budget {
     pub coverage: Coverage,
     /// The linear method.
     pub linear: Linear,
+    /// What curvature adds to it; `None` where a table's node or a branch is too close.
+    pub second_order: Option<SecondOrder>,
     /// Its coverage factor.
     pub coverage_factor: f64,
     /// Its expanded uncertainty.
@@ -226,12 +229,7 @@ pub fn budget(
     let Question { tailwater, month, .. } = *question;
     let moment = find_moment(station, question.at, Moment { head: None, tailwater, month })?;
     let head = moment.head;
-    let mut setting = station.at(moment)?;
-    let corrected = setting.problem.corrected();
-    refuse_backwards_flow(&mut setting, &corrected)?;
-    let linear = linear(&mut setting.problem).swap_remove(0);
-    let finite = linear.value.is_finite() && linear.standard_uncertainty.is_finite();
-    station.check_outcome(linear.outcome, head, finite)?;
+    let Answer { mut setting, corrected, linear } = answer(station, moment)?;
     let (coverage_factor, expanded_uncertainty) = linear.expanded(question.coverage);
     let mut warnings = station.warnings.clone();
     warnings.append(&mut setting.warnings);
@@ -248,6 +246,8 @@ pub fn budget(
     warnings.extend(table_warnings(&mut setting, &corrected));
     warnings.extend(branch_warnings(&setting));
     warnings.extend(freedom_warning(&linear));
+    let second_order = second_order(&mut setting.problem, &linear);
+    warnings.extend(curvature_warning(&linear, second_order));
     let monte_carlo = run_monte_carlo(
         &mut setting,
         question,
@@ -292,6 +292,7 @@ pub fn budget(
         limits,
         warnings,
         linear,
+        second_order,
     })
 }
 
@@ -312,21 +313,6 @@ fn kind_words(station: &Station, form: Option<&Form>) -> (String, String, String
             ("equation".to_owned(), "An equation of the station's own".to_owned(), String::new())
         }
     }
-}
-
-/// A tailwater as high as the water upstream: no equation of a weir or flume holds.
-fn refuse_backwards_flow(setting: &mut Setting, corrected: &[f64]) -> Result<(), Refusal> {
-    let model = &mut setting.problem.model;
-    let head = model.input("head").map(|input| corrected[input]);
-    let known = model.input(TAILWATER_HEAD.key).is_some();
-    let (Some(head), true) = (head, known) else { return Ok(()) };
-    let Ok((second, _)) = model.expression("h_2") else { return Ok(()) };
-    let (values, outcome) = model.evaluate(&[second], corrected);
-    let tailwater = values[0];
-    if outcome != Outcome::Dry && head > 0.0 && tailwater >= head {
-        return Err(Refusal::TailwaterAbove { tailwater, head });
-    }
-    Ok(())
 }
 
 /// The head is one that the station is not asked about.

@@ -1,10 +1,10 @@
 //! The check of a station file beyond its reading: does it answer over its whole range of heads.
 
 use crate::diagnostic::Warning;
-use crate::propagation::linear;
 use crate::station::{Kind, Moment, Refusal, Station};
 use crate::units::Unit;
 
+use super::answer::{Answer, answer};
 use super::limits::{LimitState, limit_states, station_limits};
 use super::range::{FailingLimit, failing_heads};
 
@@ -53,23 +53,17 @@ pub fn check(station: &Station) -> Check {
     };
     let ends = heads
         .into_iter()
-        .map(|head| match station.at(Moment { head, ..Moment::default() }) {
+        .map(|head| match answer(station, Moment { head, ..Moment::default() }) {
             Err(refusal) => CheckedEnd { head, result: Err(refusal), broken: Vec::new() },
-            Ok(mut setting) => {
-                let found = linear(&mut setting.problem).swap_remove(0);
-                let finite = found.value.is_finite() && found.standard_uncertainty.is_finite();
-                let unit = setting.problem.model.result_dimension().to_string();
-                let result = station
-                    .check_outcome(found.outcome, head, finite)
-                    .map(|()| (found.value, unit));
-                let corrected = setting.problem.corrected();
-                let limits = setting.form.as_ref().map_or_else(Vec::new, |form| {
-                    limit_states(&mut setting.problem.model, form, &corrected)
-                });
-                // Without a flow there is nothing to hold against the limits.
-                let broken =
-                    limits.into_iter().filter(|limit| result.is_ok() && !limit.kept).collect();
-                CheckedEnd { head, result, broken }
+            Ok(Answer { mut setting, corrected, linear }) => {
+                let model = &mut setting.problem.model;
+                let unit = model.result_dimension().to_string();
+                let limits = setting
+                    .form
+                    .as_ref()
+                    .map_or_else(Vec::new, |form| limit_states(model, form, &corrected));
+                let broken = limits.into_iter().filter(|limit| !limit.kept).collect();
+                CheckedEnd { head, result: Ok((linear.value, unit)), broken }
             }
         })
         .collect();

@@ -1,5 +1,6 @@
 //! The questions people ask of a station. Each study gives plain data that a report lays out.
 
+mod answer;
 mod at;
 mod budget;
 mod check;

@@ -4,7 +4,7 @@
 use nappe::propagation::Coverage;
 use nappe::propagation::monte_carlo::Amount;
 use nappe::station::{Station, read, template};
-use nappe::study::{At, Budget, FlowState, Question, budget};
+use nappe::study::{At, Budget, FlowState, Question, budget, check};
 
 fn station(text: &str) -> Station {
     let (station, findings) = read(text.as_bytes());
@@ -333,6 +333,15 @@ fn where_a_drowned_factor_has_no_value_no_discharge_is_stated() {
     let words = refusal(&villemonte, At::Head(0.2), Some(0.198));
     assert!(words.contains("replaces = \"published drowned-flow factor\""), "{words}");
     assert!(refusal(&villemonte, At::Head(0.2), Some(0.21)).contains("not below the head"));
+    // A check states no discharge that a budget would refuse.
+    let high = station(&format!(
+        "name = \"Sallow Lane\"\n[structure]\nkind = \"thin-plate-full-width\"\n\
+         crest_width = \"0.7 m\"\ncrest_height = \"0.5 m\"\n[head]\nrange = [\"0.1 m\", \"0.4 m\"]\n\
+         [tailwater]\nlevel = \"0.19 m\"\ndrowned_flow = \"Villemonte\"\n{HEAD_ERROR}"
+    ));
+    let ends = check(&high).ends;
+    assert!(ends[0].result.as_ref().unwrap_err().to_string().contains("not below the head"));
+    assert!(ends[1].result.is_ok());
     // Near the end of the curve some trials have no value: they are counted, never given the modular flow.
     let near = ask(&iso, 0.2, Some(0.1945), Some(20_000));
     assert!(codes(&near).contains(&"trials_undefined"), "{:?}", codes(&near));

@@ -18,4 +18,5 @@ mod limiting_cases;
 mod metrology;
 mod properties;
 mod published;
+mod second_order;
 mod stability;
