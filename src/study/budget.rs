@@ -16,8 +16,8 @@ use super::hydraulics::{FlowState, Hydraulics, hydraulics};
 use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
 use super::range::{failing_heads, note_failing_heads};
 use super::warnings::{
-    branch_warnings, curvature_warning, freedom_warning, memory_warning, table_warnings,
-    trial_warnings,
+    branch_warnings, curvature_warning, dominance_warning, freedom_warning, memory_warning,
+    table_warnings, trial_warnings,
 };
 
 /// What is asked.
@@ -246,6 +246,7 @@ pub fn budget(
     warnings.extend(table_warnings(&mut setting, &corrected));
     warnings.extend(branch_warnings(&setting));
     warnings.extend(freedom_warning(&linear));
+    warnings.extend(dominance_warning(&setting, &linear, question.coverage));
     let second_order = second_order(&mut setting.problem, &linear);
     warnings.extend(curvature_warning(&linear, second_order));
     let monte_carlo = run_monte_carlo(

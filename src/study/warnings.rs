@@ -3,7 +3,9 @@
 use super::limits::LimitState;
 use crate::diagnostic::{Code, Warning};
 use crate::propagation::monte_carlo::MonteCarlo;
-use crate::propagation::{DegreesOfFreedom, Linear, SecondOrder, linear};
+use crate::propagation::{
+    Coverage, DegreesOfFreedom, Dominant, Linear, SecondOrder, dominant, linear,
+};
 use crate::station::Setting;
 use crate::units::significant;
 
@@ -58,6 +60,33 @@ pub(super) fn curvature_warning(linear: &Linear, found: Option<SecondOrder>) -> 
              take the Monte Carlo result",
         )
     })
+}
+
+/// The normal or t factor reaches beyond the limits of what outweighs the rest.
+pub(super) fn dominance_warning(
+    setting: &Setting,
+    linear: &Linear,
+    coverage: Coverage,
+) -> Option<Warning> {
+    let probability = coverage.probability();
+    let Dominant { sources, coverage_factor } = dominant(&setting.problem, linear, probability)?;
+    let names: Vec<String> = sources
+        .iter()
+        .map(|source| format!("`{}`", setting.problem.sources[*source].name))
+        .collect();
+    let are = if names.len() > 1 {
+        "are rectangular and outweigh"
+    } else {
+        "is rectangular and outweighs"
+    };
+    let words = format!(
+        "{} {are} all other sources together: at {} % the coverage factor that belongs to it is {}, and that of \
+         the linear method reaches further (JCGM 100 G.6.5); take the Monte Carlo interval",
+        names.join(" and "),
+        significant(100.0 * probability, 4),
+        significant(coverage_factor, 3)
+    );
+    Some(Warning::new(Code::RectangularDominates, words))
 }
 
 pub(super) fn freedom_warning(linear: &Linear) -> Option<Warning> {

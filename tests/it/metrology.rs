@@ -87,6 +87,41 @@ fn a_dominant_rectangular_input_as_in_table_4() {
     assert!(!part.agreement.linear_is_adequate());
 }
 
+/// The coverage factor that the warning of a dominant rectangular part gives, if there is one.
+fn factor_of_limits(sources: &[&str]) -> Option<f64> {
+    let found = solve(&sum_of(sources), 0);
+    let warning =
+        found.warnings.iter().find(|each| each.code.as_str() == "rectangular_dominates")?;
+    let words = warning.text.split("belongs to it is ").nth(1).unwrap();
+    words.split(',').next().unwrap().parse().ok()
+}
+
+/// EA-4/02 S9 (from memory): limits of 0.05 V against a rest of 0.0064 V have k = 1.65 at 95 %. JCGM 101:2008
+/// 9.2.4: the Monte Carlo interval of ±17.0 for u = 10.1 is 1.68 u. Two equal rectangulars make a triangle, whose
+/// factor is (1 - sqrt(0.05)) sqrt(6) = 1.90 (JCGM 100 4.3.9).
+#[test]
+fn a_dominant_rectangular_part_has_its_own_factor() {
+    let limits = |half: f64| format!("half_width = {half}\nshape = \"rectangular\"");
+    let meter = [&limits(0.05), &limits(0.011), "standard_uncertainty = 0.001"];
+    near(factor_of_limits(&meter).unwrap(), 1.65, 0.005);
+    let dominated = [RECTANGULAR, RECTANGULAR, RECTANGULAR, &limits(17.320_508)];
+    near(factor_of_limits(&dominated).unwrap(), 1.645, 0.005);
+    near(
+        factor_of_limits(&[RECTANGULAR; 2]).unwrap(),
+        (1.0 - 0.05_f64.sqrt()) * 6.0_f64.sqrt(),
+        0.005,
+    );
+    // Three of the same size: none outweighs the others.
+    assert_eq!(factor_of_limits(&[RECTANGULAR; 3]), None);
+    assert_eq!(factor_of_limits(&[NORMAL]), None);
+    // Limits of 3 and 2 in a Monte Carlo run of their own: the ends of 95 % over the standard uncertainty.
+    let unequal = [&limits(3.0)[..], &limits(2.0)[..]];
+    let part = solve(&sum_of(&unequal), 4_000_000).monte_carlo.unwrap();
+    let statistics = part.result.outputs[0];
+    let drawn = statistics.intervals.symmetric[1] / statistics.standard_uncertainty;
+    near(factor_of_limits(&unequal).unwrap(), drawn, 0.01);
+}
+
 /// JCGM 100:2008 G.4.1, example: Y = b X1 X2 X3 with relative uncertainties 0.25 %, 0.57 % and 0.82 % of
 /// 10, 5 and 15 readings: u = 1.03 %, 19.0 degrees of freedom, `t_95(19)` = 2.09.
 #[test]
