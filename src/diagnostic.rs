@@ -130,8 +130,6 @@ codes! {
     CorrelatedAsNormal = "correlated_as_normal",
     /// One or two rectangular sources outweigh all others: the coverage factor of the linear method is too large.
     RectangularDominates = "rectangular_dominates",
-    /// The second-order terms add more to the variance than the first order has.
-    SecondOrderLarge = "second_order_large",
     /// The linear method does not agree with the Monte Carlo method.
     LinearNotAdequate = "linear_not_adequate",
     /// Trials in which no water passes the crest.

@@ -201,11 +201,6 @@ impl Program {
         }
     }
 
-    /// Registers in use, as a measure of how much of the cache a block takes.
-    pub fn register_count(&self) -> usize {
-        self.registers
-    }
-
     /// Sets where each solve starts from the solution at the nominal inputs.
     fn start_near(&mut self, nominal: &[f64]) {
         let mut workspace = self.workspace();

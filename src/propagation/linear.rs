@@ -1,6 +1,6 @@
 //! The linear method: law of propagation of uncertainty (JCGM 100 clause 5).
 
-use super::problem::{Action, Effect};
+use super::problem::Action;
 use super::{Coverage, Problem};
 use crate::model::Outcome;
 
@@ -113,10 +113,13 @@ fn combine(
     let mut contributions: Vec<Contribution> = problem
         .sources
         .iter()
-        .enumerate()
-        .map(|(place, source)| {
-            let mean = |at: usize| problem.sources[at].distribution.mean();
-            let sensitivity = sensitivity(problem, derivatives, corrected, place, mean);
+        .map(|source| {
+            let mean = source.distribution.mean();
+            let sensitivity: f64 = source
+                .effects
+                .iter()
+                .map(|effect| -derivatives[effect.input] * slope(problem, corrected, *effect, mean))
+                .sum();
             let standard_uncertainty = source.distribution.standard_uncertainty();
             let contribution = (sensitivity * standard_uncertainty).abs();
             Contribution { standard_uncertainty, sensitivity, contribution, share: 0.0 }
@@ -154,39 +157,17 @@ fn combine(
     }
 }
 
-/// The derivative of an output by a source's error, from its derivatives by the inputs, at given errors and the
-/// true values of the inputs that follow from them.
-pub(super) fn sensitivity(
-    problem: &Problem,
-    derivatives: &[f64],
-    values: &[f64],
-    source: usize,
-    error: impl Fn(usize) -> f64,
-) -> f64 {
-    let through = |effect: &Effect| {
-        -derivatives[effect.input] * slope(problem, values, *effect, source, &error)
-    };
-    problem.sources[source].effects.iter().map(through).sum()
-}
-
-/// How the true value of an input falls with a source's error.
-fn slope(
-    problem: &Problem,
-    values: &[f64],
-    effect: Effect,
-    source: usize,
-    error: impl Fn(usize) -> f64,
-) -> f64 {
+/// How the true value of an input falls with a source's error, at the mean errors.
+fn slope(problem: &Problem, corrected: &[f64], effect: super::Effect, mean: f64) -> f64 {
     match effect.action {
-        Action::Scale => values[effect.input] / (1.0 - error(source)),
+        Action::Scale => corrected[effect.input] / (1.0 - mean),
         Action::Shift { gain, .. } => {
             let scales: f64 = problem
                 .sources
                 .iter()
-                .enumerate()
-                .flat_map(|(place, source)| source.effects.iter().map(move |each| (place, each)))
+                .flat_map(|source| source.effects.iter().map(move |each| (source, each)))
                 .filter(|(_, each)| each.input == effect.input && each.action == Action::Scale)
-                .map(|(place, _)| 1.0 - error(place))
+                .map(|(source, _)| 1.0 - source.distribution.mean())
                 .product();
             gain * scales
         }

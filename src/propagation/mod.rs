@@ -12,7 +12,6 @@ mod dominant;
 mod linear;
 pub mod monte_carlo;
 mod problem;
-mod second_order;
 mod shares;
 
 pub use agreement::{Agreement, numerical_tolerance};
@@ -22,5 +21,4 @@ pub use distribution::Distribution;
 pub use dominant::{Dominant, dominant};
 pub use linear::{Contribution, DegreesOfFreedom, Linear, linear};
 pub use problem::{Action, Effect, Problem, Source, corrected};
-pub use second_order::{SecondOrder, second_order};
 pub use shares::{Share, Shares, shares};

@@ -4,7 +4,7 @@ use super::document::Document;
 use super::heads::heads_in_words;
 use super::rounding::rounded;
 use super::{CAUTION, FROM_MEMORY, UnitSystem};
-use crate::propagation::{Coverage, DegreesOfFreedom, SecondOrder};
+use crate::propagation::{Coverage, DegreesOfFreedom};
 use crate::station::Evidence;
 use crate::study::{Budget, BudgetRow, Correction, EquationRow, FlowState, Hydraulics, InputRow};
 use crate::units::{Dimension, Unit, significant, with_unit};
@@ -92,7 +92,6 @@ fn result_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
     let linear_column = [
         format!("{} {unit}", both.value),
         format!("{} {unit}", both.uncertainty),
-        second_order_words(budget, &unit),
         freedom_words(linear.degrees_of_freedom),
         factor_words(budget),
         format!("{} {unit}{}", ends.uncertainty, percent_words(percent)),
@@ -120,7 +119,6 @@ fn result_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
             format!("{} {unit}", both.uncertainty),
             "-".to_owned(),
             "-".to_owned(),
-            "-".to_owned(),
             format!("half the interval: {} {unit}{}", ends.uncertainty, percent_words(relative)),
             range(symmetric),
             range(shortest),
@@ -129,7 +127,6 @@ fn result_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
     let labels = [
         format!("corrected {}", budget.result.name),
         "standard uncertainty".to_owned(),
-        "  with second-order terms".to_owned(),
         "effective degrees of freedom".to_owned(),
         "coverage factor".to_owned(),
         "expanded uncertainty".to_owned(),
@@ -152,21 +149,6 @@ fn result_table(page: &mut Document, budget: &Budget, units: UnitSystem) {
         columns.push("Monte Carlo method (JCGM 101)");
     }
     page.table(&columns, rows);
-}
-
-/// Standard uncertainty with the terms of the next order, and where they shift the mean.
-fn second_order_words(budget: &Budget, unit: &Unit) -> String {
-    let Some(SecondOrder { standard_uncertainty, mean_shift, .. }) = budget.second_order else {
-        return "none: a corner of the equation is too near".to_owned();
-    };
-    let Some(u) = standard_uncertainty else {
-        return "none: they take off more than there is".to_owned();
-    };
-    let show = |value: f64| unit.from_si(value);
-    let u = rounded(show(budget.linear.value), show(u)).uncertainty;
-    let shift = significant(show(mean_shift), 2);
-    let sign = if mean_shift > 0.0 { "+" } else { "" };
-    format!("{u} {unit}, mean {sign}{shift} {unit}")
 }
 
 fn percent_words(percent: Option<f64>) -> String {

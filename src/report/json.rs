@@ -96,17 +96,6 @@ struct LinearJson {
     interval: [f64; 2],
     /// Expanded uncertainty in per cent of the value; null at 0.
     relative_expanded_percent: Option<f64>,
-    /// With the terms of the next order; null where a table's node or a branch is too close.
-    second_order: Option<SecondOrderJson>,
-}
-
-/// What curvature adds (JCGM 100 5.1.2 note, H.2.4).
-#[derive(Debug, Serialize, JsonSchema)]
-struct SecondOrderJson {
-    /// Standard uncertainty, the terms of the next order included; null where they take off more than there is.
-    standard_uncertainty: Option<f64>,
-    /// Expectation of the result minus its value at the corrected inputs.
-    mean_shift: f64,
 }
 
 /// The Monte Carlo method.
@@ -397,10 +386,6 @@ fn budget_value(budget: &Budget) -> BudgetJson {
             expanded_uncertainty: expanded,
             interval: [linear.value - expanded, linear.value + expanded],
             relative_expanded_percent: budget.result.relative_expanded_percent,
-            second_order: budget.second_order.map(|found| SecondOrderJson {
-                standard_uncertainty: found.standard_uncertainty,
-                mean_shift: found.mean_shift,
-            }),
         },
         monte_carlo: monte_carlo_value(budget),
         agreement: budget.monte_carlo.as_ref().map(|part| AgreementJson {

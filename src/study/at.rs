@@ -1,6 +1,6 @@
 //! At which head a question is asked.
 
-use crate::station::{Moment, Refusal, Station};
+use crate::station::{Moment, Refusal, Station, Tailwater};
 use crate::units::significant;
 
 /// At which head a question is asked.
@@ -89,4 +89,13 @@ const JUMP: f64 = 1e-6;
 /// Six digits, for words.
 fn rounded(value: f64) -> f64 {
     significant(value, 6).parse().unwrap_or(value)
+}
+
+/// A moment at which the station can be looked at, and whether its tailwater is known there: one that is a
+/// column of the record is taken to stand at the crest, where it drowns nothing.
+pub(super) fn without_column(station: &Station, moment: Moment) -> (Moment, bool) {
+    let unknown =
+        matches!(station.tailwater, Some(Tailwater::Column { .. })) && moment.tailwater.is_none();
+    let tailwater = moment.tailwater.or(unknown.then_some(0.0));
+    (Moment { tailwater, ..moment }, !unknown)
 }

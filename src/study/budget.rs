@@ -4,7 +4,7 @@ use crate::diagnostic::{Code, Warning};
 use crate::model::expression::Table;
 use crate::model::structures::{Form, TAILWATER_HEAD};
 use crate::propagation::monte_carlo::{Amount, MonteCarlo, monte_carlo};
-use crate::propagation::{Agreement, Coverage, Linear, SecondOrder, Share, second_order, shares};
+use crate::propagation::{Agreement, Coverage, Linear, Share, shares};
 use crate::station::{
     Evidence, Kind, Moment, Refusal, Setting, Station, Tailwater, unstated_warning,
 };
@@ -16,8 +16,8 @@ use super::hydraulics::{FlowState, Hydraulics, hydraulics};
 use super::limits::{LimitState, limit_states, limit_warnings, station_limits};
 use super::range::{failing_heads, note_failing_heads};
 use super::warnings::{
-    branch_warnings, curvature_warning, dominance_warning, freedom_warning, memory_warning,
-    table_warnings, trial_warnings,
+    branch_warnings, dominance_warning, freedom_warning, memory_warning, table_warnings,
+    trial_warnings,
 };
 
 /// What is asked.
@@ -72,8 +72,6 @@ pub struct Budget {
     pub coverage: Coverage,
     /// The linear method.
     pub linear: Linear,
-    /// What curvature adds to it; `None` where a table's node or a branch is too close.
-    pub second_order: Option<SecondOrder>,
     /// Its coverage factor.
     pub coverage_factor: f64,
     /// Its expanded uncertainty.
@@ -247,8 +245,6 @@ pub fn budget(
     warnings.extend(branch_warnings(&setting));
     warnings.extend(freedom_warning(&linear));
     warnings.extend(dominance_warning(&setting, &linear, question.coverage));
-    let second_order = second_order(&mut setting.problem, &linear);
-    warnings.extend(curvature_warning(&linear, second_order));
     let monte_carlo = run_monte_carlo(
         &mut setting,
         question,
@@ -293,7 +289,6 @@ pub fn budget(
         limits,
         warnings,
         linear,
-        second_order,
     })
 }
 

@@ -7,7 +7,7 @@ use crate::model::{Confidence, Model, Side};
 use crate::station::{Moment, Station};
 use crate::units::significant;
 
-use super::range::without_column;
+use super::at::without_column;
 
 /// What a limit asks.
 #[derive(Clone, Copy, Debug, PartialEq, Eq)]

@@ -2,8 +2,9 @@
 
 use crate::model::structures::{Form, InstalledLimit, LimitKind};
 use crate::model::{Model, Outcome, Program, Workspace};
-use crate::station::{Moment, Sketch, Station, Tailwater};
+use crate::station::{Moment, Sketch, Station};
 
+use super::at::without_column;
 use super::limits::{LimitState, limit_expressions, limit_values};
 
 /// Heads at which the range is looked at; what happens between two of them twice is not seen.
@@ -60,15 +61,6 @@ pub(super) fn failing_heads(station: &Station, moment: Moment) -> Option<Vec<Fai
         FailingLimit { limit, heads }
     });
     Some(found.collect())
-}
-
-/// A moment at which the station can be looked at, and whether its tailwater is known there: one that is a
-/// column of the record is taken to stand at the crest, where it drowns nothing.
-pub(super) fn without_column(station: &Station, moment: Moment) -> (Moment, bool) {
-    let unknown =
-        matches!(station.tailwater, Some(Tailwater::Column { .. })) && moment.tailwater.is_none();
-    let tailwater = moment.tailwater.or(unknown.then_some(0.0));
-    (Moment { tailwater, ..moment }, !unknown)
 }
 
 /// Notes with each limit at one head where in the range it is not kept.

@@ -220,7 +220,7 @@ fn checks(installation: &Installation) -> Vec<NumberLine> {
                 energy_meaning(name),
                 format!("{name} = {text}"),
                 source.document,
-                Confidence::Seen,
+                Confidence::Derived,
             )
         });
     let position = structure.head_measured;

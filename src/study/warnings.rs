@@ -3,9 +3,7 @@
 use super::limits::LimitState;
 use crate::diagnostic::{Code, Warning};
 use crate::propagation::monte_carlo::MonteCarlo;
-use crate::propagation::{
-    Coverage, DegreesOfFreedom, Dominant, Linear, SecondOrder, dominant, linear,
-};
+use crate::propagation::{Coverage, DegreesOfFreedom, Dominant, Linear, dominant, linear};
 use crate::station::Setting;
 use crate::units::significant;
 
@@ -49,17 +47,6 @@ pub(super) fn trial_warnings(result: &MonteCarlo) -> Vec<Warning> {
         warnings.push(Warning::new(Code::NotSettled, text));
     }
     warnings
-}
-
-pub(super) fn curvature_warning(linear: &Linear, found: Option<SecondOrder>) -> Option<Warning> {
-    let added = found?.added_variance;
-    (added > linear.standard_uncertainty.powi(2)).then(|| {
-        Warning::new(
-            Code::SecondOrderLarge,
-            "the second-order terms add more to the variance than the first order has (JCGM 100 5.1.2, note): \
-             take the Monte Carlo result",
-        )
-    })
 }
 
 /// The normal or t factor reaches beyond the limits of what outweighs the rest.

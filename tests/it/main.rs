@@ -18,5 +18,4 @@ mod limiting_cases;
 mod metrology;
 mod properties;
 mod published;
-mod second_order;
 mod stability;
