@@ -140,7 +140,7 @@ impl Distribution {
         }
     }
 
-    /// It is normal or a t: what a joint normal distribution can stand for.
+    /// It is normal: what a joint normal distribution stands for without loss.
     pub fn is_normal(&self) -> bool {
         matches!(self, Self::Normal { .. })
     }

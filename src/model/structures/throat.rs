@@ -1,6 +1,8 @@
 //! What the flumes with a long throat have in common: boundary layer, limits, uncertainty, head position.
 
-use super::published::{Coefficient, CoefficientRule, Constant, HeadPosition, ModularLimit};
+use super::published::{
+    Coefficient, CoefficientRule, Constant, CriticalFlow, HeadPosition, ModularLimit,
+};
 use crate::model::source::{ISO_4359, PRACTICE};
 use crate::model::{Confidence, Limit};
 use crate::units::Dimension;
@@ -21,6 +23,10 @@ pub(super) const BED_LOSS: (&str, &str) = ("C_h", "(1 - x_delta*L/h)^1.5");
 const fn memory(limit: crate::model::Unsourced) -> Limit {
     limit.by(ISO_4359, Confidence::Memory)
 }
+
+/// What a shaped throat takes, losses included: a little more than the ideal.
+pub(super) const CRITICAL_FLOW: CriticalFlow =
+    CriticalFlow { energy: "H", sill: "p", width: None, approach: ("B", Some("m_a")) };
 
 /// Smallest head.
 pub(super) const LEAST_HEAD: Limit = memory(Limit::at_least("h", "0.05", "head"));

@@ -4,10 +4,7 @@ use super::approach::{
     APPROACH_SIDE_SLOPE, APPROACH_WIDTH, FROUDE_TRAPEZOIDAL, THROUGH_TOTAL_HEAD, TOP_WIDTH,
     TOTAL_HEAD, TRAPEZOIDAL, VELOCITY_COEFFICIENT, WHILE_MODULAR,
 };
-use super::{
-    CriticalFlow, Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Solved, Structure,
-    throat,
-};
+use super::{Implicit, InputSpec, KINETIC_ENERGY_COEFFICIENT, Regime, Solved, Structure, throat};
 use crate::model::source::ISO_4359;
 use crate::model::{Confidence, Limit};
 
@@ -81,13 +78,7 @@ pub(super) static STRUCTURE: Structure = Structure {
     adjustments: &[],
     drowned: &[],
     modular: throat::MODULAR,
-    critical: Some(CriticalFlow {
-        // What the throat takes, losses included: a little more than the ideal.
-        energy: "H",
-        sill: "p",
-        width: None,
-        approach: ("B", Some("m_a")),
-    }),
+    critical: Some(throat::CRITICAL_FLOW),
     velocity_of_approach: THROUGH_TOTAL_HEAD,
     head_measured: throat::HEAD_MEASURED,
     head_in_approach: true,
